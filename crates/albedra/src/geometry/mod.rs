@@ -1,0 +1,5 @@
+//! Shapes without light.
+
+mod mesh;
+
+pub use mesh::Mesh;

@@ -1,0 +1,1 @@
+//! Arithmetic that gives the same bits everywhere: only + − × ÷ √, comparisons and our own polynomials.
