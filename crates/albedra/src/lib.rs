@@ -2,7 +2,12 @@
 //!
 //! Lengths are metres, times seconds, angles radians, fluxes watts, absorption coefficients m⁻¹ (Napierian).
 
+mod estimate;
 mod geometry;
 pub(crate) mod math;
 
+pub use estimate::{
+    BytesError, Counters, Estimate, Estimates, Fingerprint, FingerprintBuilder, FingerprintError,
+    GROUPS, Intervals, IntervalsError, Jackknife, MergeError, Sums, Totals, WithUnit,
+};
 pub use geometry::Mesh;
