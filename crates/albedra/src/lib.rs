@@ -5,4 +5,4 @@
 mod geometry;
 pub(crate) mod math;
 
-pub use geometry::Mesh;
+pub use geometry::{ImportError, Mesh, MeshFormat, Place, Unit, UnitError};
