@@ -11,3 +11,4 @@ pub use estimate::{
     GROUPS, Intervals, IntervalsError, Jackknife, MergeError, Sums, Totals, WithUnit,
 };
 pub use geometry::Mesh;
+pub use geometry::{ImportError, Mesh, MeshFormat, Place, Unit, UnitError};
