@@ -5,4 +5,4 @@
 mod geometry;
 pub(crate) mod math;
 
-pub use geometry::Mesh;
+pub use geometry::{Frame, Mesh, OutlineError, Region, RegionError, SolidError};
