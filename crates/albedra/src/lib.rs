@@ -10,5 +10,7 @@ pub use estimate::{
     BytesError, Counters, Estimate, Estimates, Fingerprint, FingerprintBuilder, FingerprintError,
     GROUPS, Intervals, IntervalsError, Jackknife, MergeError, Sums, Totals, WithUnit,
 };
-pub use geometry::Mesh;
-pub use geometry::{ImportError, Mesh, MeshFormat, Place, Unit, UnitError};
+pub use geometry::{
+    Frame, ImportError, Mesh, MeshFormat, OutlineError, Place, Region, RegionError, SolidError,
+    Unit, UnitError,
+};

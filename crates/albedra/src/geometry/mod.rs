@@ -1,7 +1,29 @@
 //! Shapes without light.
 
+mod boundary;
+mod clip;
+mod curve;
+mod frame;
 mod import;
 mod mesh;
+mod outline;
+mod outline_check;
+mod polygon;
+mod region;
+mod region_shape;
+mod solids;
+mod triangulate;
+mod visible_area;
+mod wall_plane;
 
+pub use frame::Frame;
 pub use import::{ImportError, MeshFormat, Place, Unit, UnitError};
 pub use mesh::Mesh;
+pub use outline_check::OutlineError;
+pub use region::{Region, RegionError};
+pub(crate) use region_shape::RegionShape;
+pub use solids::SolidError;
+pub(crate) use solids::{cuboid, extruded, prism};
+pub(crate) use triangulate::triangulate_facet;
+pub(crate) use visible_area::visible_areas;
+pub(crate) use wall_plane::{PlanarWall, planar_walls};
