@@ -2,6 +2,7 @@
 //!
 //! Lengths are metres, times seconds, angles radians, fluxes watts, absorption coefficients m⁻¹ (Napierian).
 
+mod flight;
 mod geometry;
 pub(crate) mod math;
 
