@@ -3,6 +3,7 @@
 //! Lengths are metres, times seconds, angles radians, fluxes watts, absorption coefficients m⁻¹ (Napierian).
 
 mod estimate;
+mod flight;
 mod geometry;
 pub(crate) mod math;
 

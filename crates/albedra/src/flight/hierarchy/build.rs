@@ -1,0 +1,425 @@
+//! Builds the tree from the top, splitting where the expected cost is least, with a bound on its depth.
+//!
+//! # Method
+//!
+//! Binned surface-area heuristic: Wald, "On fast construction of SAH-based bounding volume hierarchies", IEEE
+//! Symposium on Interactive Ray Tracing 2007, DOI 10.1109/RT.2007.4342588. A node is split on until it has eight parts.
+
+use std::ops::Range;
+
+use super::node::{CONE_MARGIN, Child, MARGIN, Node, WIDTH, larger, smaller};
+use super::{Facet, Frame, Hierarchy, Triangles};
+
+/// Nodes on any path from the root, at most.
+pub(super) const DEPTH: usize = FREE_DEPTH + BALANCED_DEPTH;
+
+/// Levels that are split by cost, which may be as uneven as it likes. Meshes of 10⁶ triangles need about nine.
+const FREE_DEPTH: usize = 14;
+
+/// Levels below, which are halved thrice each: 2²⁸ triangles fall to one in ten.
+const BALANCED_DEPTH: usize = 10;
+
+/// Triangles of a leaf, at most (eight can be written down).
+const LEAF: usize = 4;
+
+/// Places where a split is tried, plus one.
+const BINS: usize = 16;
+
+/// Height of a triangle, as a part of the frame's unit, below which its normal is not relied on.
+///
+/// The sign of the area seen along a ray can be wrong for a height across the ray of a few 2⁻⁵². Where the cones'
+/// margin of 2⁻¹⁹ says that a triangle faces away, 2⁻²⁸ still leaves a height of 2⁻⁴⁷.
+const SLIVER: f64 = 1.0 / (1 << 28) as f64;
+
+/// What the builder knows of a triangle.
+#[derive(Clone, Copy)]
+struct Item {
+    bounds: Bounds,
+    /// Unit outward normal; zero if it cannot be relied on.
+    normal: [f32; 3],
+    triangle: u32,
+}
+
+impl Item {
+    /// Twice the middle of the box.
+    #[inline(always)]
+    fn middle(&self, axis: usize) -> f32 {
+        self.bounds.low[axis] + self.bounds.high[axis]
+    }
+}
+
+/// A box in the frame.
+#[derive(Clone, Copy)]
+struct Bounds {
+    low: [f32; 3],
+    high: [f32; 3],
+}
+
+impl Bounds {
+    const EMPTY: Self = Self {
+        low: [f32::MAX; 3],
+        high: [f32::MIN; 3],
+    };
+
+    #[inline(always)]
+    fn join(&mut self, other: &Self) {
+        for axis in 0..3 {
+            self.low[axis] = smaller(self.low[axis], other.low[axis]);
+            self.high[axis] = larger(self.high[axis], other.high[axis]);
+        }
+    }
+
+    fn around(items: &[Item]) -> Self {
+        let mut all = Self::EMPTY;
+        items.iter().for_each(|item| all.join(&item.bounds));
+        all
+    }
+
+    /// Half the area of the box's surface.
+    #[inline(always)]
+    fn half_area(&self) -> f32 {
+        let [x, y, z] = [0, 1, 2].map(|axis| self.high[axis] - self.low[axis]);
+        x * y + y * z + z * x
+    }
+}
+
+/// Items that become one child.
+struct Part {
+    items: Range<usize>,
+    bounds: Bounds,
+}
+
+impl Part {
+    fn new(all: &[Item], items: Range<usize>) -> Self {
+        Self {
+            bounds: Bounds::around(&all[items.clone()]),
+            items,
+        }
+    }
+}
+
+/// Builds the hierarchy.
+pub(super) fn hierarchy(triangles: &Triangles) -> Hierarchy {
+    debug_assert!(triangles.corners.len() <= Triangles::AT_MOST);
+    let (frame, reach) = frame(triangles);
+    let mut items: Vec<Item> = (0..)
+        .zip(&triangles.corners)
+        .map(|(id, c)| item(triangles, &frame, id, *c))
+        .collect();
+    let nodes = nodes(&mut items);
+    let mut places = vec![u32::MAX; triangles.vertices.len()];
+    let mut vertices = Vec::new();
+    let facets = items.iter().map(|item| Facet {
+        corners: triangles.corners[item.triangle as usize].map(|corner| {
+            let place = &mut places[corner as usize];
+            if *place == u32::MAX {
+                *place = vertices.len() as u32;
+                let [x, y, z] = triangles.vertices[corner as usize];
+                vertices.push([x, y, z, 0.0]);
+            }
+            *place
+        }),
+        triangle: item.triangle,
+    });
+    let facets = facets.collect();
+    vertices.shrink_to_fit();
+    Hierarchy {
+        nodes,
+        facets,
+        vertices,
+        frame,
+        behind: Hierarchy::BEHIND * reach,
+    }
+}
+
+/// The frame of a mesh and its largest coordinate (no less than its extent) in metres.
+fn frame(triangles: &Triangles) -> (Frame, f64) {
+    let mut low = [f64::INFINITY; 3];
+    let mut high = [f64::NEG_INFINITY; 3];
+    for vertex in triangles
+        .corners
+        .iter()
+        .flatten()
+        .map(|corner| triangles.vertices[*corner as usize])
+    {
+        for axis in 0..3 {
+            low[axis] = if vertex[axis] < low[axis] {
+                vertex[axis]
+            } else {
+                low[axis]
+            };
+            high[axis] = if vertex[axis] > high[axis] {
+                vertex[axis]
+            } else {
+                high[axis]
+            };
+        }
+    }
+    let mut half = 0.0;
+    let mut reach = 0.0;
+    let mut centre = [0.0; 3];
+    for axis in 0..3 {
+        centre[axis] = low[axis] * 0.5 + high[axis] * 0.5;
+        for (size, largest) in [
+            (high[axis] - centre[axis], &mut half),
+            (high[axis] - low[axis], &mut reach),
+        ] {
+            *largest = if size > *largest { size } else { *largest };
+        }
+        for size in [low[axis].abs(), high[axis].abs()] {
+            reach = if size > reach { size } else { reach };
+        }
+    }
+    // No vertex, or one position only, or no numbers: any frame will do.
+    let sound = half > f64::MIN_POSITIVE && reach < f64::INFINITY;
+    // The exponent of the result is one below that of 1 / half: a power of two that is at most 1 / half.
+    let scale = if sound {
+        f64::from_bits((1.0 / half).to_bits() & (0x7ff << 52))
+    } else {
+        1.0
+    };
+    (
+        Frame {
+            centre: if sound { centre } else { [0.0; 3] },
+            scale,
+        },
+        if reach < f64::INFINITY { reach } else { 0.0 },
+    )
+}
+
+/// Box and normal of a triangle.
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "boxes are rounded outward after; normals have a margin"
+)]
+fn item(triangles: &Triangles, frame: &Frame, triangle: u32, corners: [u32; 3]) -> Item {
+    let positions = corners.map(|corner| triangles.vertices[corner as usize]);
+    let [a, b, c] = positions.map(|position| [0, 1, 2].map(|axis| frame.inside(position, axis)));
+    let mut bounds = Bounds::EMPTY;
+    for corner in [a, b, c] {
+        let low = corner.map(|x| ((x - MARGIN) as f32).next_down());
+        let high = corner.map(|x| ((x + MARGIN) as f32).next_up());
+        bounds.join(&Bounds { low, high });
+    }
+    let [ab, bc, ca] =
+        [(a, b), (b, c), (c, a)].map(|(p, q)| [0, 1, 2].map(|axis| q[axis] - p[axis]));
+    let across = cross(ab, bc);
+    let length = dot(across, across).sqrt();
+    let longest = [ab, bc, ca]
+        .iter()
+        .map(|edge| dot(*edge, *edge))
+        .fold(0.0, |l, e| if e > l { e } else { l })
+        .sqrt();
+    let sound = length > SLIVER * longest && length > 0.0;
+    Item {
+        bounds,
+        normal: across.map(|x| if sound { (x / length) as f32 } else { 0.0 }),
+        triangle,
+    }
+}
+
+/// Builds the nodes and brings the items into the order of the leaves.
+fn nodes(items: &mut [Item]) -> Vec<Node> {
+    let mut nodes = vec![Node::EMPTY];
+    let mut tasks = vec![(0, 0..items.len(), 0)];
+    while let Some((node, range, depth)) = tasks.pop() {
+        let parts = parts(items, range, depth >= FREE_DEPTH);
+        for (k, part) in parts.into_iter().enumerate() {
+            let (axis, sine) = cone(&items[part.items.clone()]);
+            let child = if part.items.len() <= LEAF {
+                Child::leaf(part.items.start, part.items.len())
+            } else {
+                nodes.push(Node::EMPTY);
+                tasks.push((nodes.len() - 1, part.items, depth + 1));
+                Child::node(nodes.len() - 1)
+            };
+            let node = &mut nodes[node];
+            for a in 0..3 {
+                node.sides[2 * a][k] = part.bounds.low[a];
+                node.sides[2 * a + 1][k] = part.bounds.high[a];
+                node.axis[a][k] = axis[a];
+            }
+            node.sine[k] = sine;
+            node.child[k] = child;
+        }
+    }
+    nodes
+}
+
+/// Splits a range of items into at most eight parts.
+fn parts(items: &mut [Item], range: Range<usize>, balanced: bool) -> Vec<Part> {
+    let mut parts = Vec::with_capacity(WIDTH);
+    if !range.is_empty() {
+        parts.push(Part::new(items, range));
+    }
+    while parts.len() < WIDTH {
+        let mut most = 0.0;
+        let mut next = None;
+        for (k, part) in parts
+            .iter()
+            .enumerate()
+            .filter(|(_, part)| part.items.len() > 1)
+        {
+            let count = part.items.len() as f32;
+            let cost = if balanced {
+                count
+            } else {
+                part.bounds.half_area() * count
+            };
+            if cost > most {
+                (most, next) = (cost, Some(k));
+            }
+        }
+        let Some(k) = next else { break };
+        let Range { start, end } = parts[k].items;
+        let slice = &mut items[start..end];
+        let middle = start
+            + if balanced {
+                halve(slice)
+            } else {
+                cheapest(slice).unwrap_or_else(|| halve(slice))
+            };
+        parts[k] = Part::new(items, start..middle);
+        parts.push(Part::new(items, middle..end));
+    }
+    parts
+}
+
+/// Splits two or more items in the middle of their longest axis, ties by index; gives the number in the first half.
+fn halve(items: &mut [Item]) -> usize {
+    let (low, high) = spread(items);
+    let [x, y, z] = [0, 1, 2].map(|axis| high[axis] - low[axis]);
+    let axis = if x >= y && x >= z {
+        0
+    } else {
+        1 + usize::from(z > y)
+    };
+    let middle = items.len() / 2;
+    items.select_nth_unstable_by(middle, |a, b| {
+        a.middle(axis)
+            .total_cmp(&b.middle(axis))
+            .then(a.triangle.cmp(&b.triangle))
+    });
+    middle
+}
+
+/// Least and greatest middles.
+fn spread(items: &[Item]) -> ([f32; 3], [f32; 3]) {
+    let mut low = [f32::MAX; 3];
+    let mut high = [f32::MIN; 3];
+    for item in items {
+        for axis in 0..3 {
+            low[axis] = smaller(item.middle(axis), low[axis]);
+            high[axis] = larger(item.middle(axis), high[axis]);
+        }
+    }
+    (low, high)
+}
+
+/// Splits where areas times numbers are least; gives the number in the first part, none if no place parts the items.
+fn cheapest(items: &mut [Item]) -> Option<usize> {
+    let (low, high) = spread(items);
+    let per_bin = [0, 1, 2].map(|axis| {
+        let width = high[axis] - low[axis];
+        if width > 0.0 {
+            BINS as f32 / width
+        } else {
+            0.0
+        }
+    });
+    let bin = |item: &Item, axis: usize| {
+        #[expect(
+            clippy::cast_possible_truncation,
+            clippy::cast_sign_loss,
+            reason = "not negative, and cut off at BINS"
+        )]
+        let bin = ((item.middle(axis) - low[axis]) * per_bin[axis]) as usize;
+        if bin < BINS { bin } else { BINS - 1 }
+    };
+    let mut bins = [[(0_u32, Bounds::EMPTY); BINS]; 3];
+    for item in items.iter() {
+        for (axis, bins) in bins.iter_mut().enumerate() {
+            let (count, bounds) = &mut bins[bin(item, axis)];
+            *count += 1;
+            bounds.join(&item.bounds);
+        }
+    }
+    let mut least = f32::MAX;
+    let mut place = None;
+    for (axis, bins) in bins.iter().enumerate() {
+        let mut costs = [0.0; BINS];
+        let mut below = (0, Bounds::EMPTY);
+        for cut in 1..BINS {
+            below.0 += bins[cut - 1].0;
+            below.1.join(&bins[cut - 1].1);
+            costs[cut] = if below.0 > 0 {
+                below.0 as f32 * below.1.half_area()
+            } else {
+                f32::INFINITY
+            };
+        }
+        let mut above = (0, Bounds::EMPTY);
+        for cut in (1..BINS).rev() {
+            above.0 += bins[cut].0;
+            above.1.join(&bins[cut].1);
+            let cost = if above.0 > 0 {
+                costs[cut] + above.0 as f32 * above.1.half_area()
+            } else {
+                f32::INFINITY
+            };
+            if cost < least {
+                (least, place) = (cost, Some((axis, cut)));
+            }
+        }
+    }
+    let (axis, cut) = place?;
+    let mut middle = 0;
+    for k in 0..items.len() {
+        if bin(&items[k], axis) < cut {
+            items.swap(k, middle);
+            middle += 1;
+        }
+    }
+    Some(middle)
+}
+
+/// Axis and sine of the half-angle, margin included, of a cone around all normals; sine 2 if there is none.
+#[expect(clippy::cast_possible_truncation, reason = "covered by the margin")]
+fn cone(items: &[Item]) -> ([f32; 3], f32) {
+    const NONE: ([f32; 3], f32) = ([0.0; 3], 2.0);
+    let mut sum = [0.0; 3];
+    for item in items {
+        sum = [0, 1, 2].map(|axis| sum[axis] + f64::from(item.normal[axis]));
+    }
+    let length = dot(sum, sum).sqrt();
+    if !(length > 0.0) {
+        return NONE;
+    }
+    let axis = sum.map(|x| x / length);
+    let mut widest = 0.0;
+    for item in items {
+        let normal = item.normal.map(f64::from);
+        let across = cross(axis, normal);
+        let sine = dot(across, across);
+        widest = if sine > widest { sine } else { widest };
+        // Also where a normal is zero.
+        if !(dot(axis, normal) > 0.0) {
+            return NONE;
+        }
+    }
+    (axis.map(|x| x as f32), widest.sqrt() as f32 + CONE_MARGIN)
+}
+
+/// Scalar product.
+pub(super) fn dot(a: [f64; 3], b: [f64; 3]) -> f64 {
+    a[0] * b[0] + a[1] * b[1] + a[2] * b[2]
+}
+
+/// Vector product.
+pub(super) fn cross(a: [f64; 3], b: [f64; 3]) -> [f64; 3] {
+    [
+        a[1] * b[2] - a[2] * b[1],
+        a[2] * b[0] - a[0] * b[2],
+        a[0] * b[1] - a[1] * b[0],
+    ]
+}

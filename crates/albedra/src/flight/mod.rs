@@ -1,0 +1,3 @@
+//! Kernels that find the next strike.
+
+pub(crate) mod hierarchy;
