@@ -12,6 +12,6 @@ pub use estimate::{
     GROUPS, Intervals, IntervalsError, Jackknife, MergeError, Sums, Totals, WithUnit,
 };
 pub use geometry::{
-    Frame, ImportError, Mesh, MeshFormat, OutlineError, Place, Region, RegionError, SolidError,
-    Unit, UnitError,
+    Audit, Frame, ImportError, Mesh, MeshFormat, OutlineError, Place, Problem, Region, RegionError,
+    SolidError, Unit, UnitError,
 };

@@ -37,7 +37,9 @@ impl Mesh {
 
     /// Positions of a facet's corners, in order.
     pub fn positions_of(&self, facet: usize) -> impl ExactSizeIterator<Item = DVec3> + Clone + '_ {
-        self.corners_of(facet).iter().map(|&corner| self.vertices[corner as usize])
+        self.corners_of(facet)
+            .iter()
+            .map(|&corner| self.vertices[corner as usize])
     }
 
     /// Adds a facet to a wall.
@@ -46,16 +48,21 @@ impl Mesh {
             self.starts.push(0);
         }
         self.corners.extend_from_slice(corners);
-        self.starts.push(u32::try_from(self.corners.len()).expect("fewer than 2^32 corners"));
+        self.starts
+            .push(u32::try_from(self.corners.len()).expect("fewer than 2^32 corners"));
         self.facet_walls.push(wall);
     }
 
     /// Index of the wall of this name, added if it is new.
     pub fn wall(&mut self, name: &str) -> u32 {
-        let found = self.walls.iter().position(|wall| wall == name).unwrap_or_else(|| {
-            self.walls.push(name.to_owned());
-            self.walls.len() - 1
-        });
+        let found = self
+            .walls
+            .iter()
+            .position(|wall| wall == name)
+            .unwrap_or_else(|| {
+                self.walls.push(name.to_owned());
+                self.walls.len() - 1
+            });
         u32::try_from(found).expect("fewer than 2^32 walls")
     }
 }

@@ -1,8 +1,11 @@
 //! Shapes without light.
 
+mod audit;
 mod boundary;
 mod clip;
+mod convex;
 mod curve;
+mod facet;
 mod frame;
 mod import;
 mod mesh;
@@ -16,6 +19,7 @@ mod triangulate;
 mod visible_area;
 mod wall_plane;
 
+pub use audit::{Audit, Problem};
 pub use frame::Frame;
 pub use import::{ImportError, MeshFormat, Place, Unit, UnitError};
 pub use mesh::Mesh;
