@@ -144,6 +144,23 @@ mod tests {
     }
 
     #[test]
+    fn both_zeros_are_one_place() {
+        let mut facets = [square(0, 0), square(-1, 0)];
+        for corner in &mut facets[1] {
+            *corner = -*corner + DVec3::new(0.0, 1.0, -0.0);
+            corner.x = -corner.x;
+        }
+        facets[1].reverse();
+        assert!(
+            facets
+                .iter()
+                .flatten()
+                .any(|corner| corner.x == 0.0 && corner.x.is_sign_negative())
+        );
+        assert_eq!(boundary_loops(&facets).unwrap().len(), 1);
+    }
+
+    #[test]
     fn facets_that_run_the_same_way_along_an_edge_have_no_border() {
         assert_eq!(boundary_loops(&[square(0, 0), square(0, 0)]), None);
     }

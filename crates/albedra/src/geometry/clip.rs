@@ -238,6 +238,26 @@ mod tests {
     }
 
     #[test]
+    fn cells_that_end_on_borders_but_for_rounding_are_full_or_empty() {
+        let wall = flat_wall(vec![
+            vec![(0.0, 0.0), (0.7, 0.0), (0.7, 0.7), (0.0, 0.7)],
+            vec![(0.3, 0.1), (0.3, 0.6), (0.6, 0.6), (0.6, 0.1)],
+        ]);
+        let cells = wall.cells(7, 7);
+        assert!(
+            cells.u_edges[3] != 0.3 || cells.u_edges[6] != 0.6,
+            "else nothing is tested"
+        );
+        for (i, area) in cells.areas.iter().enumerate() {
+            let (column, row) = (i % 7, i / 7);
+            let hole = (3..6).contains(&column) && (1..6).contains(&row);
+            let full = (cells.u_edges[column + 1] - cells.u_edges[column])
+                * (cells.v_edges[row + 1] - cells.v_edges[row]);
+            assert_eq!(*area, if hole { 0.0 } else { full }, "cell {i}");
+        }
+    }
+
+    #[test]
     fn no_cells_and_no_wall() {
         let wall = flat_wall(vec![vec![(0.0, 0.0), (1.0, 0.0), (0.0, 1.0)]]);
         assert!(wall.cells(0, 5).areas.is_empty());

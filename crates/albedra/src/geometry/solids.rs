@@ -42,10 +42,12 @@ impl fmt::Display for SolidError {
                 low,
                 high,
             } => {
-                let unit = if *argument == "sides" { "" } else { " m" };
+                if *argument == "sides" {
+                    return write!(f, "{argument} must lie in [{low}, {high}], got {value}");
+                }
                 write!(
                     f,
-                    "{argument} must lie in [{low:e}, {high:e}]{unit}, got {value:?}"
+                    "{argument} must lie in [{low:e}, {high:e}] m, got {value:?} m"
                 )
             }
             Self::Outline(error) => error.fmt(f),
@@ -373,6 +375,8 @@ mod tests {
             }))
         );
         let text = prism(2, 1.0, 1.0).unwrap_err().to_string();
-        assert_eq!(text, "sides must lie in [3e0, 4.096e3], got 2.0");
+        assert_eq!(text, "sides must lie in [3, 4096], got 2");
+        let text = cuboid([1.0, -2.0, 1.0]).unwrap_err().to_string();
+        assert_eq!(text, "y size must lie in [1e-9, 1e9] m, got -2.0 m");
     }
 }

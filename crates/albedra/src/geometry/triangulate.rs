@@ -18,8 +18,8 @@ const FLAT: f64 = 1e-12;
 ///
 /// # Method
 ///
-/// Ear clipping (Meisters 1975, "Polygons have ears", from memory). Each corner remembers the corner that keeps it from being
-/// an ear, so that most looks at it are one comparison.
+/// Ear clipping (Meisters 1975, "Polygons have ears", from memory). What a corner was found to be stays true until one of
+/// its neighbours is clipped, so that most looks at it are one comparison.
 pub(crate) fn triangulate(corners: &[Point]) -> Option<Vec<[u32; 3]>> {
     let count = corners.len();
     if !(3..=MOST_CORNERS).contains(&count)
@@ -50,7 +50,7 @@ pub(crate) fn triangulate(corners: &[Point]) -> Option<Vec<[u32; 3]>> {
                 return None;
             }
             (looks, tolerance) = (0, 0.0);
-            clipper.blocker.fill(None);
+            clipper.refused.fill(false);
         }
     }
     triangles.push(clipper.triangle(at)?);
@@ -63,9 +63,8 @@ struct Clipper<'a> {
     clockwise: bool,
     next: Vec<usize>,
     previous: Vec<usize>,
-    gone: Vec<bool>,
-    /// A corner within the triangle at this corner, while the triangle is the same.
-    blocker: Vec<Option<usize>>,
+    /// Corners known to be no ears as long as their neighbours stay the same.
+    refused: Vec<bool>,
     /// Corners that were reflex or flat at the start. No others can be the only ones within a triangle.
     bent: Vec<usize>,
 }
@@ -81,8 +80,7 @@ impl<'a> Clipper<'a> {
             clockwise: area < 0.0,
             next: (0..count).map(|i| (i + 1) % count).collect(),
             previous: (0..count).map(|i| (i + count - 1) % count).collect(),
-            gone: vec![false; count],
-            blocker: vec![None; count],
+            refused: vec![false; count],
             bent: Vec::new(),
         };
         clipper.bent = (0..count)
@@ -116,9 +114,11 @@ impl<'a> Clipper<'a> {
     }
 
     fn is_ear(&mut self, at: usize, tolerance: f64) -> bool {
-        if self.blocker[at].is_some_and(|corner| !self.gone[corner]) {
+        if self.refused[at] {
             return false;
         }
+        // Set for now; an ear is clipped at once.
+        self.refused[at] = true;
         if !self.is_convex(at, tolerance) {
             return false;
         }
@@ -129,16 +129,13 @@ impl<'a> Clipper<'a> {
             low: (bounds.low.0 - slack, bounds.low.1 - slack),
             high: (bounds.high.0 + slack, bounds.high.1 + slack),
         };
-        let blocker = self.bent.iter().copied().find(|&corner| {
+        !self.bent.iter().any(|&corner| {
             let point = self.corners[corner];
             near.meets(&Bounds {
                 low: point,
                 high: point,
-            }) && !self.gone[corner]
-                && self.blocks(corner, triangle, tolerance)
-        });
-        self.blocker[at] = blocker;
-        blocker.is_none()
+            }) && self.blocks(corner, triangle, tolerance)
+        })
     }
 
     /// Whether a corner lies in the triangle or on its border.
@@ -162,9 +159,8 @@ impl<'a> Clipper<'a> {
         let (a, c) = (self.previous[at], self.next[at]);
         self.next[a] = c;
         self.previous[c] = a;
-        self.gone[at] = true;
-        self.blocker[a] = None;
-        self.blocker[c] = None;
+        self.refused[a] = false;
+        self.refused[c] = false;
         c
     }
 }
@@ -284,6 +280,14 @@ mod tests {
             .chain((20..200).rev().map(|i| arm(0.0, i)))
             .collect();
         assert_eq!(check(&spiral), 358);
+    }
+
+    #[test]
+    fn needles_thinner_than_the_tolerance_are_cut_too() {
+        assert_eq!(
+            check(&[(0.0, 0.0), (1.0, -1e-14), (2.0, 0.0), (1.0, 1e-14)]),
+            2
+        );
     }
 
     #[test]
