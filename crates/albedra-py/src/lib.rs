@@ -1,11 +1,9 @@
 //! The compiled half of the Python package `albedra`: it converts arguments and results, and holds no physics.
 
-use pyo3::prelude::*;
-
 /// Where light goes in a closed cavity.
-#[pymodule]
+#[pyo3::pymodule]
 mod _albedra {
-    use super::*;
+    use pyo3::prelude::*;
 
     #[pymodule_init]
     fn init(module: &Bound<'_, PyModule>) -> PyResult<()> {
