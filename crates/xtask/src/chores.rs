@@ -10,6 +10,9 @@ use crate::venv::Venv;
 /// The program that `cargo xtask demo` runs, from the root of the checkout.
 const DEMO: &str = "python/demo/chamber.py";
 
+/// Plots are drawn into files: neither the tests nor the demo may open a window.
+const HEADLESS: (&str, &str) = ("MPLBACKEND", "Agg");
+
 /// A named list of steps.
 #[derive(Debug)]
 pub(crate) struct Chore {
@@ -74,7 +77,9 @@ fn demo(place: &Place, extra: &[OsString]) -> Result<Vec<Step>, Failure> {
     let venv = Venv::ready(place, "demo-venv")?;
     Ok(vec![
         install(place, &venv, "./python[demo]"),
-        venv.step(place, DEMO).args(extra),
+        venv.step(place, DEMO)
+            .env(HEADLESS.0, HEADLESS.1)
+            .args(extra),
     ])
 }
 
@@ -147,6 +152,7 @@ fn python_checks(place: &Place, venv: &Venv, extra: &[OsString]) -> Vec<Step> {
         // Without colours, so that its conclusion can be read.
         venv.step(place, "-m pytest python/tests --color=no --override-ini")
             .arg(pytest_cache)
+            .env(HEADLESS.0, HEADLESS.1)
             .args(extra)
             .counted(),
     ]);
