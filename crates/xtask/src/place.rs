@@ -2,7 +2,9 @@
 
 use std::env;
 use std::ffi::OsString;
-use std::path::PathBuf;
+use std::fs;
+use std::io;
+use std::path::{self, PathBuf};
 use std::process::{Command, Stdio};
 
 use crate::failure::Failure;
@@ -56,11 +58,23 @@ impl Place {
         .ok_or(Failure::Metadata {
             wanted: "target_directory",
         })?;
+        let target = plain(PathBuf::from(target))?;
         Ok(Self {
             root,
-            target: target.into(),
+            target,
             cargo,
         })
+    }
+}
+
+/// The same folder, made if need be, without `..`: not every program takes it.
+fn plain(folder: PathBuf) -> io::Result<PathBuf> {
+    fs::create_dir_all(&folder)?;
+    // On Windows the canonical form is one that few programs understand, but the absolute one has no `..`.
+    if cfg!(windows) {
+        path::absolute(folder)
+    } else {
+        fs::canonicalize(folder)
     }
 }
 
@@ -84,7 +98,20 @@ fn string_after(json: &str, key: &str) -> Option<String> {
 
 #[cfg(test)]
 mod tests {
-    use super::string_after;
+    use super::{plain, string_after};
+
+    #[test]
+    fn steps_back_are_taken_out_of_a_path() {
+        let root = std::env::temp_dir().join(format!("albedra xtask path {}", std::process::id()));
+        let found = plain(root.join("a").join("..").join("b")).expect("made");
+        assert!(found.is_absolute() && found.ends_with("b") && found.is_dir());
+        assert!(
+            found.components().all(|part| part.as_os_str() != ".."),
+            "{}",
+            found.display()
+        );
+        std::fs::remove_dir_all(root).expect("cleaned up");
+    }
 
     const KEY: &str = "\"target_directory\":\"";
 

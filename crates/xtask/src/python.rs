@@ -69,7 +69,7 @@ fn probe(command: &OsStr, script: &str) -> Result<Python, String> {
         call.env_remove(name);
     }
     let answer = call.output().map_err(|error| match error.kind() {
-        ErrorKind::NotFound => "not found".to_owned(),
+        ErrorKind::NotFound => "is not found".to_owned(),
         _ => format!("cannot be started: {error}"),
     })?;
     let printed = String::from_utf8_lossy(&answer.stdout);
@@ -100,17 +100,17 @@ fn judge(printed: &str, complaint: &str, success: bool) -> Result<(u32, String),
                 Some(name) => {
                     format!("has no {name} module (Debian, Ubuntu: apt install python3-venv)")
                 }
-                None => format!("failed: {}", last_line(complaint)),
+                None => format!("failed: {}", telling(complaint.lines().rev())),
             })
         }
         Some((major, minor)) => Err(format!("is {major}.{minor}, 3.{OLDEST} or newer is needed")),
-        None => Err(format!("does not run: {}", last_line(complaint))),
+        None => Err(format!("does not run: {}", telling(complaint.lines()))),
     }
 }
 
-fn last_line(text: &str) -> &str {
-    text.lines()
-        .rev()
+/// The first line that is not blank: a shim says what is wrong at the top, a traceback at the bottom.
+fn telling<'a>(lines: impl Iterator<Item = &'a str>) -> &'a str {
+    lines
         .map(str::trim)
         .find(|line| !line.is_empty())
         .unwrap_or("it said nothing")
@@ -157,7 +157,11 @@ mod tests {
 
     #[test]
     fn a_shim_without_a_python_behind_it_is_refused() {
-        let objection = judge("", "pyenv: python3.12: command not found\n\n", false);
+        let objection = judge(
+            "",
+            "\npyenv: python3.12: command not found\n\nSee help.\n",
+            false,
+        );
         assert_eq!(
             objection,
             Err("does not run: pyenv: python3.12: command not found".into())
@@ -180,7 +184,7 @@ mod tests {
     fn a_command_that_does_not_exist_is_not_found() {
         let objection =
             probe(OsStr::new("no-such-python-here"), "pass").expect_err("it is refused");
-        assert_eq!(objection, "not found");
+        assert_eq!(objection, "is not found");
     }
 
     #[test]

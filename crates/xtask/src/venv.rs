@@ -46,10 +46,7 @@ impl Venv {
 
     /// A step that runs the environment's interpreter without loading anything from the current folder.
     pub(crate) fn step(&self, place: &Place, line: &str) -> Step {
-        Step::new(place, &self.python)
-            .arg("-P")
-            .words(line)
-            .env("MPLBACKEND", "Agg")
+        Step::new(place, &self.python).arg("-P").words(line)
     }
 }
 
