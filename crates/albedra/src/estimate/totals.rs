@@ -164,6 +164,26 @@ impl Totals {
         Ok(())
     }
 
+    /// Adds what a batch of photons booked, which no photon of these totals is among.
+    pub(crate) fn absorb(
+        &mut self,
+        photons: std::ops::Range<u64>,
+        groups: &[[i128; GROUPS]],
+        counters: Counters,
+    ) {
+        let disjoint = self.photons.insert(photons);
+        debug_assert!(disjoint.is_ok(), "batches follow one another");
+        for (ours, theirs) in self.groups.iter_mut().zip(groups) {
+            for (sum, more) in ours.iter_mut().zip(theirs) {
+                *sum += more;
+            }
+        }
+        self.counters.strikes += counters.strikes;
+        self.counters.flights += counters.flights;
+        self.counters.retried += counters.retried;
+        self.counters.untracked += counters.untracked;
+    }
+
     /// Makes ready for many estimates: sums the groups of every output once.
     ///
     /// `exponents` gives the quantum of each output as a power of two.

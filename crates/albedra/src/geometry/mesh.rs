@@ -43,6 +43,10 @@ impl Mesh {
     }
 
     /// Adds a facet to a wall.
+    ///
+    /// # Panics
+    ///
+    /// If the mesh has 2³² corners or more.
     pub fn push_facet(&mut self, corners: &[u32], wall: u32) {
         if self.starts.is_empty() {
             self.starts.push(0);
@@ -54,6 +58,10 @@ impl Mesh {
     }
 
     /// Index of the wall of this name, added if it is new.
+    ///
+    /// # Panics
+    ///
+    /// If the mesh has 2³² walls or more.
     pub fn wall(&mut self, name: &str) -> u32 {
         let found = self
             .walls

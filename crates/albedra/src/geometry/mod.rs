@@ -9,6 +9,7 @@ mod facet;
 mod frame;
 mod import;
 mod mesh;
+mod mesh_bytes;
 mod outline;
 mod outline_check;
 mod polygon;
@@ -20,6 +21,8 @@ mod visible_area;
 mod wall_plane;
 
 pub use audit::{Audit, Problem};
+pub(crate) use convex::{ConvexPlane, convex_planes};
+pub(crate) use facet::facet_area_normal;
 pub use frame::Frame;
 pub use import::{ImportError, MeshFormat, Place, Unit, UnitError};
 pub use mesh::Mesh;

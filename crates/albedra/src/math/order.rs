@@ -1,11 +1,13 @@
 //! The smaller and the larger of two numbers, with every tie and every NaN settled.
 
 /// The smaller of two numbers; the first one if they are equal or cannot be compared.
+#[inline(always)]
 pub(crate) fn smaller(a: f64, b: f64) -> f64 {
     if b < a { b } else { a }
 }
 
 /// The larger of two numbers; the first one if they are equal or cannot be compared.
+#[inline(always)]
 pub(crate) fn larger(a: f64, b: f64) -> f64 {
     if b > a { b } else { a }
 }

@@ -1,0 +1,135 @@
+//! What a strike finds: the row that was struck and what it does to the weight.
+
+use super::block::{Block, LANES};
+use super::level::{Level, Stage};
+use crate::geometry::{Frame, RegionShape};
+use crate::math::quanta;
+
+/// The surfaces of the flight kernel, the rows that they belong to and the rows' coatings, flattened into tables.
+#[derive(Debug, Default)]
+pub(crate) struct Surfaces {
+    /// Wall of each surface.
+    pub(crate) walls: Vec<u32>,
+    /// Row of each surface where no region covers it.
+    pub(crate) rows: Vec<u64>,
+    /// Whether a strike on this surface needs wall coordinates (regions or a map).
+    pub(crate) placed: Vec<bool>,
+    pub(crate) any_placed: bool,
+    /// By wall: its frame and its regions with their rows, the earliest first.
+    pub(crate) plans: Vec<Option<WallPlan>>,
+    /// By row; openings and absorbers have 0.
+    pub(crate) reflectance: Vec<f64>,
+    pub(crate) specular_share: Vec<f64>,
+}
+
+/// A planar wall's coordinates and what is painted on it.
+#[derive(Clone, Debug)]
+pub(crate) struct WallPlan {
+    pub(crate) frame: Frame,
+    pub(crate) regions: Vec<(RegionShape, u64)>,
+}
+
+impl WallPlan {
+    /// The row of the latest region that covers a point, if any does.
+    pub(crate) fn region_row(&self, u: f64, v: f64) -> Option<u64> {
+        self.regions
+            .iter()
+            .rev()
+            .find(|(shape, _)| shape.contains(u, v))
+            .map(|&(_, row)| row)
+    }
+}
+
+impl Surfaces {
+    /// Finds the rows that were struck, and books the reflectance on the weight.
+    pub(crate) fn strike(&self, level: Level, block: &mut Block) {
+        self.find_rows(block);
+        level.run(Weigh {
+            reflectance: &self.reflectance,
+            block,
+        });
+    }
+
+    fn find_rows(&self, block: &mut Block) {
+        for lane in 0..block.live {
+            block.row[lane] = self.rows[block.surface[lane] as usize];
+        }
+        if !self.any_placed {
+            return;
+        }
+        block.placed.clear();
+        for lane in 0..block.live {
+            if self.placed[block.surface[lane] as usize] {
+                block.placed.push(lane as u16);
+            }
+        }
+        for &lane in &block.placed {
+            let lane = usize::from(lane);
+            let Some(plan) = &self.plans[self.walls[block.surface[lane] as usize] as usize] else {
+                continue;
+            };
+            let [x, y, z] = [
+                block.position[0][lane],
+                block.position[1][lane],
+                block.position[2][lane],
+            ];
+            let (u, v) = plan.frame.to_plane(glam::DVec3::new(x, y, z));
+            block.uv[0][lane] = u;
+            block.uv[1][lane] = v;
+            if let Some(row) = plan.region_row(u, v) {
+                block.row[lane] = row;
+            }
+        }
+    }
+}
+
+struct Weigh<'a> {
+    reflectance: &'a [f64],
+    block: &'a mut Block,
+}
+
+impl Stage for Weigh<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run(self) {
+        let live = self.block.live;
+        let Block {
+            row,
+            scratch,
+            weight,
+            lost,
+            leaving,
+            path,
+            flight,
+            strikes,
+            ..
+        } = self.block;
+        let rho = &mut scratch[0];
+        for lane in 0..live {
+            rho[lane] = self.reflectance[row[lane] as usize];
+        }
+        weigh(live, rho, weight, lost, leaving);
+        for lane in 0..live {
+            path[lane] += flight[lane];
+            strikes[lane] += 1;
+        }
+    }
+}
+
+#[inline(always)]
+fn weigh(
+    live: usize,
+    rho: &[f64; LANES],
+    weight: &mut [f64; LANES],
+    lost: &mut [f64; LANES],
+    leaving: &mut [i64; LANES],
+) {
+    let live = if live < LANES { live } else { LANES };
+    for lane in 0..live {
+        let after = weight[lane] * rho[lane];
+        lost[lane] = weight[lane] - after;
+        weight[lane] = after;
+        leaving[lane] = quanta(after);
+    }
+}

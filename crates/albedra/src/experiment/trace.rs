@@ -1,0 +1,339 @@
+//! Running an experiment.
+
+use std::fmt;
+use std::ops::ControlFlow;
+use std::thread::available_parallelism;
+
+use super::compile::{Compiled, compile};
+use super::{Experiment, ExperimentError};
+use crate::engine::{EngineError, LANES, Level, Order, Progress, run};
+use crate::estimate::{MergeError, Totals};
+use crate::outcome::{Outcome, Target};
+
+/// First photon of a pilot run; photons of results have smaller indices.
+const PILOT: u64 = 1 << 62;
+
+/// Photons of a pilot run.
+const PILOT_PHOTONS: u64 = 12_800;
+
+/// A function that is told how far a run is and may stop it.
+type Watch<'a> = Box<dyn FnMut(&Progress) -> ControlFlow<()> + 'a>;
+
+/// A run that is being prepared: options, then [`Trace::run`].
+#[must_use = "a trace does nothing until it is run"]
+pub struct Trace<'a> {
+    experiment: &'a Experiment,
+    photons: u64,
+    seed: u64,
+    first: u64,
+    threads: Option<usize>,
+    lanes: usize,
+    level: Level,
+    before: Option<&'a Outcome>,
+    target: Option<(String, f64)>,
+    watched: Option<String>,
+    watch: Option<Watch<'a>>,
+}
+
+impl fmt::Debug for Trace<'_> {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.debug_struct("Trace")
+            .field("photons", &self.photons)
+            .field("seed", &self.seed)
+            .field("first", &self.first)
+            .finish_non_exhaustive()
+    }
+}
+
+impl<'a> Trace<'a> {
+    pub(super) fn new(experiment: &'a Experiment, photons: u64) -> Self {
+        Self {
+            experiment,
+            photons,
+            seed: 0,
+            first: 0,
+            threads: None,
+            lanes: LANES,
+            level: Level::best(),
+            before: None,
+            target: None,
+            watched: None,
+            watch: None,
+        }
+    }
+
+    /// Sets the seed; 0 unless told otherwise. The same seed gives the same photons.
+    pub fn seed(mut self, seed: u64) -> Self {
+        self.seed = seed;
+        self
+    }
+
+    /// Sets the index of the first photon; 0 unless told otherwise. A run may so be divided among machines.
+    pub fn from(mut self, first: u64) -> Self {
+        self.first = first;
+        self
+    }
+
+    /// Sets the number of threads; all cores unless told otherwise. Results do not depend on it.
+    pub fn threads(mut self, threads: usize) -> Self {
+        self.threads = Some(threads);
+        self
+    }
+
+    /// Sets how many photons a block holds, from 1 to 256. Results do not depend on it.
+    pub fn lanes(mut self, lanes: usize) -> Self {
+        self.lanes = lanes;
+        self
+    }
+
+    /// Sets the instruction set. Results do not depend on it.
+    pub fn level(mut self, level: Level) -> Self {
+        self.level = level;
+        self
+    }
+
+    /// Continues an outcome: its seed is taken, the photons that follow its last one are traced, and both are merged.
+    pub fn continuing(mut self, outcome: &'a Outcome) -> Self {
+        self.seed = outcome.totals().seed();
+        self.first = outcome
+            .totals()
+            .photons()
+            .iter()
+            .next_back()
+            .map_or(0, |range| range.end);
+        self.before = Some(outcome);
+        self
+    }
+
+    /// Wants a relative standard uncertainty of an output: a pilot run on other photons, which is thrown away, decides how
+    /// many photons to trace, at most the number given. The outcome equals that of tracing this number.
+    pub fn target(mut self, output: impl Into<String>, relative: f64) -> Self {
+        self.target = Some((output.into(), relative));
+        self
+    }
+
+    /// Names the output whose relative uncertainty the watch is told; the target's, or the mean path, unless told otherwise.
+    pub fn watching(mut self, output: impl Into<String>) -> Self {
+        self.watched = Some(output.into());
+        self
+    }
+
+    /// Has a function called about twenty times a second, on this thread, that may stop the run with `Break`.
+    pub fn watch(mut self, watch: impl FnMut(&Progress) -> ControlFlow<()> + 'a) -> Self {
+        self.watch = Some(Box::new(watch));
+        self
+    }
+
+    /// Runs.
+    ///
+    /// # Errors
+    ///
+    /// If the experiment or an option is wrong, or if the watch stopped the run; then the error has what is done so far.
+    pub fn run(mut self) -> Result<Outcome, RunError> {
+        let compiled = compile(self.experiment).map_err(RunError::Experiment)?;
+        if self.photons == 0 {
+            return Err(RunError::Photons { value: 0 });
+        }
+        if self
+            .first
+            .checked_add(self.photons)
+            .is_none_or(|end| end > PILOT)
+        {
+            return Err(RunError::Photons {
+                value: self.photons,
+            });
+        }
+        let threads = self
+            .threads
+            .unwrap_or_else(|| available_parallelism().map_or(1, usize::from));
+        if !(1..=4096).contains(&threads) {
+            return Err(RunError::Threads { value: threads });
+        }
+        if !(1..=LANES).contains(&self.lanes) {
+            return Err(RunError::Lanes { value: self.lanes });
+        }
+        let watched = self
+            .watched
+            .take()
+            .or_else(|| self.target.as_ref().map(|(output, _)| output.clone()))
+            .unwrap_or_else(|| "mean_path".to_owned());
+        compiled
+            .layout
+            .known(&watched)
+            .map_err(RunError::Experiment)?;
+        let mut watch = self.watch.take();
+        let mut go =
+            |first, photons| self.trace(&compiled, threads, first, photons, &watched, &mut watch);
+
+        let mut photons = self.photons;
+        let mut met = None;
+        if let Some((output, relative)) = &self.target {
+            if !(1e-9..1.0).contains(relative) {
+                return Err(RunError::Target { value: *relative });
+            }
+            compiled
+                .layout
+                .known(output)
+                .map_err(RunError::Experiment)?;
+            let (pilot, flow) = go(PILOT, PILOT_PHOTONS)?;
+            if flow.is_break() {
+                return Err(RunError::Cancelled { partial: None });
+            }
+            let pilot = Outcome::new(self.experiment, &compiled.layout, pilot);
+            photons = photons_for(pilot.relative_uncertainty(output), *relative, self.photons);
+            met = Some((output.clone(), *relative));
+        }
+
+        let (mut totals, flow) = go(self.first, photons)?;
+        if let Some(before) = self.before {
+            let mut merged = before.totals().clone();
+            merged.merge(&totals).map_err(RunError::Merge)?;
+            totals = merged;
+        }
+        let mut outcome = Outcome::new(self.experiment, &compiled.layout, totals);
+        if let Some((output, relative)) = met {
+            let reached = outcome.relative_uncertainty(&output);
+            outcome.set_target(Target {
+                output,
+                relative,
+                reached,
+            });
+        }
+        if flow.is_break() {
+            let partial = (outcome.photons() > 0).then(|| Box::new(outcome));
+            return Err(RunError::Cancelled { partial });
+        }
+        Ok(outcome)
+    }
+
+    fn trace(
+        &self,
+        compiled: &Compiled,
+        threads: usize,
+        first: u64,
+        photons: u64,
+        watched: &str,
+        watch: &mut Option<Watch<'a>>,
+    ) -> Result<(Totals, ControlFlow<()>), RunError> {
+        let plan = &compiled.plan;
+        let order = Order {
+            plan,
+            seed: self.seed,
+            first,
+            photons,
+            threads,
+            lanes: self.lanes,
+            level: self.level,
+        };
+        let mut tell = |progress: &Progress, totals: &Totals| {
+            let Some(watch) = watch else {
+                return ControlFlow::Continue(());
+            };
+            let mut progress = progress.clone();
+            let relative = compiled.layout.relative_uncertainty(totals, watched);
+            progress.relative_uncertainty = relative.is_finite().then_some(relative);
+            watch(&progress)
+        };
+        run(&order, &mut tell)
+            .map_err(|EngineError::Threads(reason)| RunError::NoThreads { reason })
+    }
+}
+
+/// Photons that bring a relative uncertainty down to the target, with a tenth to spare, at most `most`.
+fn photons_for(pilot: f64, target: f64, most: u64) -> u64 {
+    let ratio = pilot / target;
+    let wanted = PILOT_PHOTONS as f64 * ratio * ratio * 1.2;
+    if wanted < most as f64 {
+        let whole = wanted as u64 + 1;
+        if whole > PILOT_PHOTONS {
+            whole
+        } else {
+            PILOT_PHOTONS.min(most)
+        }
+    } else {
+        most
+    }
+}
+
+/// A run that gave no outcome.
+#[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
+pub enum RunError {
+    /// The experiment cannot be traced.
+    Experiment(ExperimentError),
+    /// No photons, or indices beyond 2⁶².
+    Photons {
+        /// What was given.
+        value: u64,
+    },
+    /// Threads outside 1 to 4096.
+    Threads {
+        /// What was given.
+        value: usize,
+    },
+    /// The operating system gave no threads.
+    NoThreads {
+        /// Its reason.
+        reason: String,
+    },
+    /// Lanes outside 1 to 256.
+    Lanes {
+        /// What was given.
+        value: usize,
+    },
+    /// The relative uncertainty wanted is out of range.
+    Target {
+        /// What was given.
+        value: f64,
+    },
+    /// The outcome to be continued does not fit.
+    Merge(MergeError),
+    /// The watch stopped the run.
+    Cancelled {
+        /// What was done in full before, if anything was.
+        partial: Option<Box<Outcome>>,
+    },
+}
+
+impl fmt::Display for RunError {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            Self::Experiment(error) => error.fmt(f),
+            Self::Photons { value } => {
+                write!(f, "photons must number from 1 to 2^62 in all, got {value}")
+            }
+            Self::Threads { value } => write!(f, "threads must number from 1 to 4096, got {value}"),
+            Self::NoThreads { reason } => write!(f, "the system gave no threads: {reason}"),
+            Self::Lanes { value } => write!(f, "lanes must number from 1 to {LANES}, got {value}"),
+            Self::Target { value } => {
+                write!(
+                    f,
+                    "target must be a relative uncertainty from 1e-9 to 1, got {value}"
+                )
+            }
+            Self::Merge(error) => error.fmt(f),
+            Self::Cancelled {
+                partial: Some(outcome),
+            } => {
+                write!(
+                    f,
+                    "the run was stopped; {} photons are done",
+                    outcome.photons()
+                )
+            }
+            Self::Cancelled { partial: None } => {
+                write!(f, "the run was stopped before any batch was done")
+            }
+        }
+    }
+}
+
+impl std::error::Error for RunError {
+    fn source(&self) -> Option<&(dyn std::error::Error + 'static)> {
+        match self {
+            Self::Experiment(error) => Some(error),
+            Self::Merge(error) => Some(error),
+            _ => None,
+        }
+    }
+}

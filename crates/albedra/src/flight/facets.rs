@@ -1,0 +1,102 @@
+//! Any mesh: the nearest facet that faces the photon, by a hierarchy of boxes.
+
+use super::hierarchy::Hierarchy;
+use super::{Flight, Retries};
+use crate::engine::{Block, Level, NOWHERE, Stage};
+
+/// Triangles with the hierarchy over them; a triangle's index is the surface.
+#[derive(Debug)]
+pub(crate) struct Facets {
+    hierarchy: Hierarchy,
+    /// Plane n·x = offset of each triangle, outward unit normal.
+    planes: Vec<[f64; 4]>,
+}
+
+impl Facets {
+    pub(crate) fn new(hierarchy: Hierarchy, planes: Vec<[f64; 4]>) -> Self {
+        Self { hierarchy, planes }
+    }
+
+    /// The nearest triangle of a point, and the point put on its plane.
+    fn nearest(&self, point: [f64; 3]) -> (u32, [f64; 3]) {
+        let (_, triangle) = self.hierarchy.nearest_triangle(point);
+        (triangle, onto(point, self.planes[triangle as usize]))
+    }
+}
+
+/// A point put back onto a plane, so that rounding does not add up over strikes.
+#[inline(always)]
+fn onto([x, y, z]: [f64; 3], [a, b, c, offset]: [f64; 4]) -> [f64; 3] {
+    let off = offset - (a * x + b * y + c * z);
+    [x + off * a, y + off * b, z + off * c]
+}
+
+impl Flight for Facets {
+    fn next(&self, level: Level, block: &mut Block, retries: &mut Retries) {
+        level.run(Next {
+            facets: self,
+            block,
+            retries,
+        });
+    }
+}
+
+struct Next<'a> {
+    facets: &'a Facets,
+    block: &'a mut Block,
+    retries: &'a mut Retries,
+}
+
+impl Stage for Next<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn run(self) {
+        let Self {
+            facets,
+            block,
+            retries,
+        } = self;
+        for lane in 0..block.live {
+            let mut origin = [
+                block.position[0][lane],
+                block.position[1][lane],
+                block.position[2][lane],
+            ];
+            let direction = [
+                block.direction[0][lane],
+                block.direction[1][lane],
+                block.direction[2][lane],
+            ];
+            let surface = block.surface[lane];
+            let standing = if surface == NOWHERE {
+                u32::MAX
+            } else {
+                surface as u32
+            };
+            let mut hit = facets.hierarchy.next(origin, direction, standing);
+            if hit.is_none() {
+                // Rounding has put the photon a little outside: once more from the nearest surface.
+                retries.retried += 1;
+                let (triangle, on_it) = facets.nearest(origin);
+                origin = on_it;
+                hit = facets.hierarchy.next(origin, direction, triangle);
+            }
+            let Some(hit) = hit else {
+                block.missed.push(lane as u16);
+                continue;
+            };
+            let plane = facets.planes[hit.triangle as usize];
+            let at = onto(
+                [0, 1, 2].map(|axis| origin[axis] + hit.t * direction[axis]),
+                plane,
+            );
+            for axis in 0..3 {
+                block.position[axis][lane] = at[axis];
+                block.normal[axis][lane] = -plane[axis];
+            }
+            block.flight[lane] = hit.t;
+            block.surface[lane] = u64::from(hit.triangle);
+        }
+    }
+}

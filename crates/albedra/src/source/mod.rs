@@ -1,0 +1,194 @@
+//! Where photons start.
+
+mod emission;
+
+use glam::DVec3;
+use serde::{Deserialize, Serialize};
+
+pub(crate) use emission::{
+    Aim, DiskSite, Emission, Emitter, PointSite, Site, Spot, sine_squared, unit,
+};
+
+/// Where light starts, and in which directions; its radiant flux is in watts (for a pulse: joules).
+///
+/// Whether a source fits its enclosure is checked when an experiment is traced.
+///
+/// # Examples
+///
+/// ```
+/// use albedra::Source;
+///
+/// let lamp = Source::point([0.2, 0.0, 0.0]).flux(5.0);
+/// let glowing_wall = Source::wall("z-").flux(2.0);
+/// let entering_beam = Source::beam([0.0, 0.0, -0.2], [0.0, 0.0, 1.0]).radius(0.01).divergence(0.05);
+/// assert_eq!(lamp.watts() + glowing_wall.watts() + entering_beam.watts(), 8.0);
+/// ```
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Source {
+    pub(crate) place: Place,
+    pub(crate) spread: Spread,
+    pub(crate) flux: f64,
+}
+
+/// Where photons start.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case", deny_unknown_fields)]
+pub(crate) enum Place {
+    Point {
+        position: DVec3,
+    },
+    Disk {
+        centre: DVec3,
+        axis: DVec3,
+        radius: f64,
+    },
+    Wall {
+        name: String,
+    },
+    Walls,
+    Volume,
+}
+
+/// In which directions they start.
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case", deny_unknown_fields)]
+pub(crate) enum Spread {
+    Isotropic,
+    /// By the cosine law about an axis, or about the wall's normal; up to a half-angle in radians.
+    Cosine {
+        axis: Option<DVec3>,
+        half_angle: f64,
+    },
+    Parallel {
+        axis: DVec3,
+    },
+}
+
+/// A quarter turn in radians: the half-angle of a whole hemisphere.
+pub(crate) const HEMISPHERE: f64 = std::f64::consts::FRAC_PI_2;
+
+impl Source {
+    fn new(place: Place, spread: Spread) -> Self {
+        Self {
+            place,
+            spread,
+            flux: 1.0,
+        }
+    }
+
+    /// Light from a point (metres), isotropic.
+    pub fn point(position: impl Into<DVec3>) -> Self {
+        Self::new(
+            Place::Point {
+                position: position.into(),
+            },
+            Spread::Isotropic,
+        )
+    }
+
+    /// A pencil of light from a position (metres) along a direction of any length.
+    pub fn beam(position: impl Into<DVec3>, direction: impl Into<DVec3>) -> Self {
+        let axis = direction.into();
+        let place = Place::Disk {
+            centre: position.into(),
+            axis,
+            radius: 0.0,
+        };
+        Self::new(
+            place,
+            Spread::Cosine {
+                axis: Some(axis),
+                half_angle: 0.0,
+            },
+        )
+    }
+
+    /// Light from a wall, a region or an opening, uniform over its visible area and Lambertian.
+    pub fn wall(name: impl Into<String>) -> Self {
+        Self::new(
+            Place::Wall { name: name.into() },
+            Spread::Cosine {
+                axis: None,
+                half_angle: HEMISPHERE,
+            },
+        )
+    }
+
+    /// Light from all walls, regions and openings by area, Lambertian.
+    pub fn walls() -> Self {
+        Self::new(
+            Place::Walls,
+            Spread::Cosine {
+                axis: None,
+                half_angle: HEMISPHERE,
+            },
+        )
+    }
+
+    /// Light that fills the volume uniformly and runs in all directions.
+    pub fn volume() -> Self {
+        Self::new(Place::Volume, Spread::Isotropic)
+    }
+
+    /// Sets the radiant flux in watts (for a pulse: the energy in joules).
+    #[must_use]
+    pub fn flux(mut self, watts: f64) -> Self {
+        self.flux = watts;
+        self
+    }
+
+    /// Lets a point emit by the cosine law about an axis of any length, into that half of space only.
+    #[must_use]
+    pub fn cosine_about(mut self, axis: impl Into<DVec3>) -> Self {
+        self.spread = Spread::Cosine {
+            axis: Some(axis.into()),
+            half_angle: HEMISPHERE,
+        };
+        self
+    }
+
+    /// Gives a beam a radius in metres: its photons start uniformly on a disk across its axis.
+    #[must_use]
+    pub fn radius(mut self, metres: f64) -> Self {
+        if let Place::Disk { radius, .. } = &mut self.place {
+            *radius = metres;
+        }
+        self
+    }
+
+    /// Gives a beam a divergence, the half-angle in radians of a cone of uniform radiance about its axis.
+    #[must_use]
+    pub fn divergence(self, half_angle: f64) -> Self {
+        self.cone(half_angle)
+    }
+
+    /// Keeps light by the cosine law within a half-angle in radians of its axis or of the wall's normal.
+    #[must_use]
+    pub fn cone(mut self, radians: f64) -> Self {
+        match &mut self.spread {
+            Spread::Cosine { half_angle, .. } => *half_angle = radians,
+            other => {
+                *other = Spread::Cosine {
+                    axis: None,
+                    half_angle: radians,
+                }
+            }
+        }
+        self
+    }
+
+    /// Makes the light of walls parallel to a direction of any length, which must lead inward from all of them.
+    #[must_use]
+    pub fn parallel(mut self, direction: impl Into<DVec3>) -> Self {
+        self.spread = Spread::Parallel {
+            axis: direction.into(),
+        };
+        self
+    }
+
+    /// Radiant flux in watts.
+    pub fn watts(&self) -> f64 {
+        self.flux
+    }
+}
