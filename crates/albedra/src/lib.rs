@@ -36,3 +36,8 @@ pub use outcome::{
     Curve, Decay, DecayTime, FlightHistogram, Flux, Ledger, LoadError, Map, Outcome, Target,
 };
 pub use source::Source;
+
+/// The README's example is a test too.
+#[cfg(doctest)]
+#[doc = include_str!("../../../README.md")]
+struct Readme;

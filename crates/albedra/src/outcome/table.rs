@@ -57,9 +57,13 @@ impl Outcome {
         let gain = 1.0 / (1.0 - facts.mean_reflectance);
         writeln!(
             f,
-            "mean reflectance {}, amplification 1/(1 − ρ) {}, group index {}, absorption {} /m",
+            "mean reflectance {}, amplification 1/(1 − ρ) {}",
             short(facts.mean_reflectance),
             short(gain),
+        )?;
+        writeln!(
+            f,
+            "group index {}, absorption {} /m",
             medium.group_index(),
             medium.absorption(),
         )
@@ -84,8 +88,8 @@ impl Outcome {
             ("roulette", ledger.roulette),
         ];
         for (name, estimate) in lines {
-            let percent = 100.0 * estimate.value / ledger.emitted;
-            writeln!(f, "{name:<14}{:>26}{percent:>12.4}", estimate.to_string())?;
+            let percent = share(100.0 * estimate.value / ledger.emitted);
+            writeln!(f, "{name:<14}{:>26}{percent:>12}", estimate.to_string())?;
         }
         let closes = if ledger.closes() {
             "closes to the last integer"
@@ -102,7 +106,12 @@ impl Outcome {
             "flux in W", "incident", "direct", "absorbed", "escaped"
         )?;
         for (row, flux) in self.rows().iter().zip(self.fluxes()) {
-            let name: String = row.name.chars().take(13).collect();
+            // A long name has a line of its own.
+            let long = row.name.chars().count() > 13;
+            if long {
+                writeln!(f, "{}", row.name.chars().take(WIDTH).collect::<String>())?;
+            }
+            let name = if long { "" } else { row.name.as_str() };
             let [incident, direct, absorbed, escaped] =
                 [flux.incident, flux.direct, flux.absorbed, flux.escaped].map(compact);
             let (absorbed, escaped) = if row.is_opening() {
@@ -120,7 +129,8 @@ impl Outcome {
 
     fn flight_lines(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         let mut line = |name: &str, estimate: Estimate, unit: &str| {
-            writeln!(f, "{name:<28}{:>28} {unit}", estimate.to_string())
+            let text = format!("{name:<28}{:>28} {unit}", estimate.to_string());
+            writeln!(f, "{}", text.trim_end())
         };
         line("mean free path", self.mean_free_path(), "m")?;
         line("mean strikes", self.mean_strikes(), "")?;
@@ -190,7 +200,22 @@ const LEAST_P: f64 = 7e-6;
 
 /// An estimate for a narrow column.
 fn compact(estimate: Estimate) -> String {
-    estimate.to_string().replace(' ', "")
+    let text = estimate.to_string();
+    if text.starts_with('<') {
+        text
+    } else {
+        text.replace(' ', "")
+    }
+}
+
+/// A percentage to four decimals, never a negative zero.
+fn share(percent: f64) -> String {
+    let text = format!("{percent:.4}");
+    if text == "-0.0000" {
+        "0.0000".to_owned()
+    } else {
+        text
+    }
 }
 
 /// A known number in at most six digits.
