@@ -17,5 +17,7 @@ pub(crate) use plan::Plan;
 pub(crate) use retire::Retirement;
 pub use run::Progress;
 pub(crate) use run::{EngineError, Order, run};
+#[cfg(test)]
+pub(crate) use streams::Streams;
 pub(crate) use streams::{Lane, STREAM_VERSION};
 pub(crate) use surfaces::{Surfaces, WallPlan};

@@ -103,7 +103,12 @@ impl VolumeSite {
                 inside: Box::new(Inside::new(solid)),
             };
         }
-        let apex = [0, 1, 2].map(|axis| 0.5 * (lower[axis] + upper[axis]));
+        // The mean of the vertices is inside a convex body; the middle of its bounding box need not be.
+        let vertices = &solid.mesh.vertices;
+        let sum = vertices
+            .iter()
+            .fold(glam::DVec3::ZERO, |sum, vertex| sum + *vertex);
+        let apex = (sum / vertices.len() as f64).to_array();
         let triangles: Vec<_> = (0..solid.triangles.len())
             .map(|triangle| solid.corners(triangle))
             .collect();
@@ -177,6 +182,60 @@ impl Site for VolumeSite {
                     }
                 }
                 None
+            }
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::enclosure::Enclosure;
+    use crate::engine::Streams;
+    use crate::geometry::Mesh;
+
+    /// A corner of the unit cube: the middle of its bounding box lies outside.
+    fn corner() -> Mesh {
+        let mut mesh = Mesh::default();
+        let wall = mesh.wall("mesh");
+        mesh.vertices = [[0.0; 3], [1.0, 0.0, 0.0], [0.0, 1.0, 0.0], [0.0, 0.0, 1.0]]
+            .map(glam::DVec3::from_array)
+            .to_vec();
+        for facet in [[0, 2, 1], [0, 1, 3], [0, 3, 2], [1, 2, 3]] {
+            mesh.push_facet(&facet, wall);
+        }
+        mesh
+    }
+
+    #[test]
+    fn volume_of_a_tetrahedron_is_filled_evenly() {
+        let enclosure = Enclosure::from_mesh(corner()).expect("sound");
+        // Both kinds of site must agree.
+        let convex = VolumeSite::new(&enclosure.solid);
+        let [lower, upper] = enclosure.solid.bounds;
+        let inside = Box::new(Inside::new(&enclosure.solid));
+        let tested = VolumeSite::Box {
+            lower,
+            upper,
+            inside,
+        };
+        let mut streams = Streams::new();
+        for site in [convex, tested] {
+            let photons = 20_000_u32;
+            let mut sums = [0.0; 3];
+            for photon in 0..photons {
+                streams.seed(0, 3, u64::from(photon));
+                let (at, _, _) = site.spot(&mut streams.lane(0)).expect("found");
+                assert!(at.iter().all(|&x| x >= 0.0) && at[0] + at[1] + at[2] <= 1.0 + 1e-12);
+                for axis in 0..3 {
+                    sums[axis] += at[axis];
+                }
+            }
+            // Each coordinate has the mean 1/4 and the variance 3/80 (Dirichlet law with four ones).
+            for sum in sums {
+                let n = f64::from(photons);
+                let zeta = (sum / n - 0.25) / (3.0 / 80.0 / n).sqrt();
+                assert!(zeta.abs() < 4.5, "{zeta}");
             }
         }
     }
