@@ -14,13 +14,16 @@ use super::{Facet, Frame, Hierarchy, Triangles};
 pub(super) const DEPTH: usize = FREE_DEPTH + BALANCED_DEPTH;
 
 /// Levels that are split by cost, which may be as uneven as it likes. Meshes of 10⁶ triangles need about nine.
-const FREE_DEPTH: usize = 14;
+pub(super) const FREE_DEPTH: usize = 14;
 
 /// Levels below, which are halved thrice each: 2²⁸ triangles fall to one in ten.
 const BALANCED_DEPTH: usize = 10;
+const _: () = assert!(LEAF << (3 * BALANCED_DEPTH) >= Triangles::AT_MOST);
 
 /// Triangles of a leaf, at most (eight can be written down).
-const LEAF: usize = 4;
+///
+/// With four, spheres take half as much memory again and no less time; with eight, small meshes take longer.
+const LEAF: usize = 6;
 
 /// Places where a split is tried, plus one.
 const BINS: usize = 16;
@@ -71,7 +74,9 @@ impl Bounds {
 
     fn around(items: &[Item]) -> Self {
         let mut all = Self::EMPTY;
-        items.iter().for_each(|item| all.join(&item.bounds));
+        for item in items {
+            all.join(&item.bounds);
+        }
         all
     }
 
@@ -98,15 +103,19 @@ impl Part {
     }
 }
 
-/// Builds the hierarchy.
-pub(super) fn hierarchy(triangles: &Triangles) -> Hierarchy {
+/// Builds the hierarchy; `free_depth` levels are split by cost.
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "there are at most 2³² vertices, since corners are u32"
+)]
+pub(super) fn hierarchy(triangles: &Triangles, free_depth: usize) -> Hierarchy {
     debug_assert!(triangles.corners.len() <= Triangles::AT_MOST);
     let (frame, reach) = frame(triangles);
     let mut items: Vec<Item> = (0..)
         .zip(&triangles.corners)
         .map(|(id, c)| item(triangles, &frame, id, *c))
         .collect();
-    let nodes = nodes(&mut items);
+    let nodes = nodes(&mut items, free_depth);
     let mut places = vec![u32::MAX; triangles.vertices.len()];
     let mut vertices = Vec::new();
     let facets = items.iter().map(|item| Facet {
@@ -114,8 +123,7 @@ pub(super) fn hierarchy(triangles: &Triangles) -> Hierarchy {
             let place = &mut places[corner as usize];
             if *place == u32::MAX {
                 *place = vertices.len() as u32;
-                let [x, y, z] = triangles.vertices[corner as usize];
-                vertices.push([x, y, z, 0.0]);
+                vertices.push(triangles.vertices[corner as usize]);
             }
             *place
         }),
@@ -219,11 +227,11 @@ fn item(triangles: &Triangles, frame: &Frame, triangle: u32, corners: [u32; 3]) 
 }
 
 /// Builds the nodes and brings the items into the order of the leaves.
-fn nodes(items: &mut [Item]) -> Vec<Node> {
+fn nodes(items: &mut [Item], free_depth: usize) -> Vec<Node> {
     let mut nodes = vec![Node::EMPTY];
     let mut tasks = vec![(0, 0..items.len(), 0)];
     while let Some((node, range, depth)) = tasks.pop() {
-        let parts = parts(items, range, depth >= FREE_DEPTH);
+        let parts = parts(items, range, depth >= free_depth);
         for (k, part) in parts.into_iter().enumerate() {
             let (axis, sine) = cone(&items[part.items.clone()]);
             let child = if part.items.len() <= LEAF {
@@ -234,10 +242,10 @@ fn nodes(items: &mut [Item]) -> Vec<Node> {
                 Child::node(nodes.len() - 1)
             };
             let node = &mut nodes[node];
-            for a in 0..3 {
+            for (a, component) in axis.into_iter().enumerate() {
                 node.sides[2 * a][k] = part.bounds.low[a];
                 node.sides[2 * a + 1][k] = part.bounds.high[a];
-                node.axis[a][k] = axis[a];
+                node.axis[a][k] = component;
             }
             node.sine[k] = sine;
             node.child[k] = child;
@@ -392,7 +400,7 @@ fn cone(items: &[Item]) -> ([f32; 3], f32) {
         sum = [0, 1, 2].map(|axis| sum[axis] + f64::from(item.normal[axis]));
     }
     let length = dot(sum, sum).sqrt();
-    if !(length > 0.0) {
+    if length.is_nan() || length <= 0.0 {
         return NONE;
     }
     let axis = sum.map(|x| x / length);
@@ -403,7 +411,8 @@ fn cone(items: &[Item]) -> ([f32; 3], f32) {
         let sine = dot(across, across);
         widest = if sine > widest { sine } else { widest };
         // Also where a normal is zero.
-        if !(dot(axis, normal) > 0.0) {
+        let cosine = dot(axis, normal);
+        if cosine.is_nan() || cosine <= 0.0 {
             return NONE;
         }
     }

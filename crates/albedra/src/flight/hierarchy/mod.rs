@@ -7,6 +7,15 @@
 //! Boxes and cones are in `f32`, in coordinates that are centred on the mesh and scaled to about one, and always too
 //! wide, never too narrow; triangles are tested in `f64`. So the answer is that of testing all triangles in turn.
 
+#![expect(
+    clippy::inline_always,
+    reason = "so that all is compiled for the caller's instruction set"
+)]
+#![expect(
+    clippy::needless_bitwise_bool,
+    reason = "one branch, or none, where the outcome cannot be predicted"
+)]
+
 mod build;
 mod nearest;
 mod node;
@@ -37,7 +46,7 @@ impl Triangles {
 /// Where a ray strikes.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(crate) struct Hit {
-    /// Distance in units of the direction's length (metres for a unit direction), never negative.
+    /// Distance in metres, never negative.
     pub(crate) t: f64,
     /// The triangle's index in [`Triangles::corners`].
     pub(crate) triangle: u32,
@@ -50,8 +59,8 @@ pub(crate) struct Hierarchy {
     nodes: Vec<Node>,
     /// In the order of the leaves.
     facets: Vec<Facet>,
-    /// In the order in which the leaves need them; the fourth number is padding.
-    vertices: Vec<[f64; 4]>,
+    /// In the order in which the leaves need them.
+    vertices: Vec<[f64; 3]>,
     frame: Frame,
     behind: f64,
 }
@@ -74,7 +83,8 @@ impl Hierarchy {
     /// A position carries a rounding error of a few 2⁻⁵³ of the largest coordinate, so a ray that starts on one
     /// triangle, close to another, may start just outside that one. 2⁻⁴⁴ leaves room for some hundred such errors. It
     /// must not be large: beside a concave edge the triangle round the corner lies behind a ray that rightly leaves
-    /// it, and a start nearer to the edge than this is booked there by mistake (one strike in 10¹³).
+    /// it, and a start nearer to the edge than this is booked there by mistake, which befalls a share
+    /// of strikes of the same order.
     const BEHIND: f64 = 1.0 / (1_u64 << 44) as f64;
 
     /// Builds the hierarchy; the same triangles always give the same one.
@@ -85,14 +95,15 @@ impl Hierarchy {
     ///
     /// If a triangle names a vertex that does not exist.
     pub(crate) fn new(triangles: &Triangles) -> Self {
-        build::hierarchy(triangles)
+        build::hierarchy(triangles, build::FREE_DEPTH)
     }
 
     /// Finds the next strike of the ray from `origin` in metres along `direction`.
     ///
     /// Only triangles whose outward normal has a positive component along the direction count, and `standing`, the
     /// triangle that the ray has just left ([`Self::NOWHERE`] if none), never does. The nearest strike is taken, of
-    /// equally near ones that of the smallest index. The origin lies inside the mesh or, but for rounding, on it.
+    /// equally near ones that of the smallest index. The direction has unit length, and the origin lies inside the mesh
+    /// or on it, both but for rounding.
     #[inline]
     pub(crate) fn next(&self, origin: [f64; 3], direction: [f64; 3], standing: u32) -> Option<Hit> {
         self.next_with(&mut Stack::new(), origin, direction, standing)
@@ -107,7 +118,7 @@ impl Hierarchy {
 
     /// Positions of a facet's corners.
     #[inline(always)]
-    fn corners(&self, facet: &Facet) -> [[f64; 4]; 3] {
-        facet.corners.map(|corner| self.vertices[corner as usize])
+    fn corners(&self, facet: &Facet) -> [&[f64; 3]; 3] {
+        facet.corners.map(|corner| &self.vertices[corner as usize])
     }
 }

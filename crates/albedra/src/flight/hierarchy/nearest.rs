@@ -64,7 +64,7 @@ impl Hierarchy {
                     Ok(_) if distance > best.0 => {}
                     Ok((first, count)) => {
                         for facet in &self.facets[first..first + count] {
-                            let corners = self.corners(facet).map(|[x, y, z, _]| [x, y, z]);
+                            let corners = self.corners(facet).map(|corner| *corner);
                             let found = (distance_to(point, &corners), facet.triangle);
                             if (found.0 < best.0 || (found.0 == best.0 && found.1 < best.1))
                                 && accept(facet, &corners)

@@ -83,6 +83,10 @@ impl Node {
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Child(pub(super) u32);
 
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "a mesh has at most 2²⁸ triangles, and not more nodes"
+)]
 impl Child {
     const LEAF: u32 = 1 << 31;
 

@@ -23,6 +23,10 @@ impl Stack {
 impl Hierarchy {
     /// Finds the next strike as `next` does; what the stack holds before and after does not matter.
     #[inline(always)]
+    #[expect(
+        clippy::cast_possible_truncation,
+        reason = "an entry is two halves of 32 bits"
+    )]
     pub(crate) fn next_with(
         &self,
         stack: &mut Stack,
@@ -70,7 +74,7 @@ impl Hierarchy {
                     Err(inner) => break inner,
                     Ok((first, count)) => {
                         for facet in &self.facets[first..first + count] {
-                            let Some(t) = ray.strike(&self.corners(facet), self.behind) else {
+                            let Some(t) = ray.strike(self.corners(facet), self.behind) else {
                                 continue;
                             };
                             let nearer =

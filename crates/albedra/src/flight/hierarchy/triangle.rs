@@ -10,8 +10,9 @@
 //! rounding moves vertices but opens no edge. An edge gives exactly opposite areas to its two triangles, because
 //! a × b − c × d and c × d − a × b are, without fused multiplication. And the sign of an area is never wrong:
 //! rounding keeps the order of the two products, so a small area may become zero but does not change sign, and zero
-//! counts as inside. (The equivalent triple products d · (p × q) lack the last property: a ray aimed at a vertex finds
-//! areas of random signs around it, and now and then no triangle.)
+//! counts as inside. (The triple products d · (p × q), which are equivalent but for rounding, lack the last property: a
+//! ray aimed at a vertex finds areas of random signs around it. Of the 1.3 million rays that the tests aim at edges and
+//! vertices 1551 slipped through with them.)
 
 /// A triangle as the leaves hold it.
 #[derive(Clone, Copy, Debug)]
@@ -65,25 +66,27 @@ impl Ray {
 
     /// A vertex as seen along the ray: two coordinates across and one along.
     #[inline(always)]
-    fn seen(&self, vertex: &[f64; 4]) -> [f64; 3] {
+    fn seen(&self, vertex: &[f64; 3]) -> [f64; 3] {
         let [first, second, along] = self.axes;
-        let z = vertex[along & 3] - self.origin[2];
-        let x = (vertex[first & 3] - self.origin[0]) - self.shear[0] * z;
-        let y = (vertex[second & 3] - self.origin[1]) - self.shear[1] * z;
+        let z = vertex[along] - self.origin[2];
+        let x = (vertex[first] - self.origin[0]) - self.shear[0] * z;
+        let y = (vertex[second] - self.origin[1]) - self.shear[1] * z;
         [x, y, z]
     }
 
     /// Distance to a triangle that the ray meets from inside, zero if it lies less than `behind` behind the start.
     #[inline(always)]
-    pub(super) fn strike(&self, corners: &[[f64; 4]; 3], behind: f64) -> Option<f64> {
-        let [ax, ay, az] = self.seen(&corners[0]);
-        let [bx, by, bz] = self.seen(&corners[1]);
-        let [cx, cy, cz] = self.seen(&corners[2]);
+    pub(super) fn strike(&self, corners: [&[f64; 3]; 3], behind: f64) -> Option<f64> {
+        let [ax, ay, az] = self.seen(corners[0]);
+        let [bx, by, bz] = self.seen(corners[1]);
+        let [cx, cy, cz] = self.seen(corners[2]);
         let u = bx * cy - by * cx;
         let v = cx * ay - cy * ax;
         let w = ax * by - ay * bx;
         let area = u + v + w;
-        if !((u >= 0.0) & (v >= 0.0) & (w >= 0.0) & (area > 0.0)) {
+        let least = if u < v { u } else { v };
+        let least = if least < w { least } else { w };
+        if !((least >= 0.0) & (area > 0.0)) {
             return None;
         }
         let t = (u * az + v * bz + w * cz) / area * self.stretch;

@@ -7,7 +7,7 @@ use super::walk::unit;
 
 /// A unit sphere of 20 · 4^level triangles.
 pub(super) fn icosphere(level: u32) -> Triangles {
-    let g = (1.0 + 5.0_f64.sqrt()) / 2.0;
+    let g = (1.0 + 5.0_f64.sqrt()) * 0.5;
     let mut vertices: Vec<[f64; 3]> = [(0, 1), (1, 2), (2, 0)]
         .iter()
         .flat_map(|(a, b)| {
@@ -69,7 +69,7 @@ pub(super) fn spiky(level: u32) -> Triangles {
     let mut mesh = icosphere(level);
     for (k, vertex) in (0_u64..).zip(&mut mesh.vertices) {
         let noise = (k + 1).wrapping_mul(0x9e37_79b9_7f4a_7c15) >> 40;
-        let radius = 0.7 + 0.6 * noise as f64 / (1 << 24) as f64;
+        let radius = 0.7 + 0.6 * noise as f64 / f64::from(1 << 24);
         *vertex = vertex.map(|x| x * radius);
     }
     mesh
