@@ -74,6 +74,11 @@ impl Checks {
         self.compare(id, measured.into(), reference, 0.0);
     }
 
+    /// Compares with a reference known within `relative` of it, which counts as its standard uncertainty.
+    pub fn near(&mut self, id: &str, measured: impl Into<Measured>, reference: f64, relative: f64) {
+        self.compare(id, measured.into(), reference, relative * reference.abs());
+    }
+
     /// Compares two independent measurements of one quantity (Welch–Satterthwaite degrees of freedom).
     pub fn equal(&mut self, id: &str, a: impl Into<Measured>, b: impl Into<Measured>) {
         let (a, b) = (a.into(), b.into());
