@@ -30,6 +30,19 @@ impl Measured {
             ..self
         }
     }
+
+    /// Adds an independent measurement (Welch–Satterthwaite degrees of freedom).
+    #[must_use]
+    pub fn plus(self, other: Self) -> Self {
+        let (a, b) = (self.u * self.u, other.u * other.u);
+        let degrees_of_freedom = (a + b) * (a + b)
+            / (a * a / self.degrees_of_freedom + b * b / other.degrees_of_freedom);
+        Self {
+            value: self.value + other.value,
+            u: (a + b).sqrt(),
+            degrees_of_freedom,
+        }
+    }
 }
 
 /// The comparisons of one topic: collects, prints and fails together.
@@ -82,16 +95,12 @@ impl Checks {
     /// Compares two independent measurements of one quantity (Welch–Satterthwaite degrees of freedom).
     pub fn equal(&mut self, id: &str, a: impl Into<Measured>, b: impl Into<Measured>) {
         let (a, b) = (a.into(), b.into());
-        let (va, vb) = (a.u * a.u, b.u * b.u);
-        let degrees_of_freedom = (va + vb) * (va + vb)
-            / (va * va / a.degrees_of_freedom + vb * vb / b.degrees_of_freedom);
-        let u = (va + vb).sqrt();
+        let difference = a.plus(b.scaled(-1.0));
         self.compare(
             id,
             Measured {
                 value: a.value,
-                u,
-                degrees_of_freedom,
+                ..difference
             },
             b.value,
             0.0,
@@ -321,6 +330,16 @@ mod tests {
             measured(1.08, 0.01),
             measured(1.0, 0.01)
         )));
+    }
+
+    #[test]
+    fn a_sum_has_between_the_fewest_and_all_degrees_of_freedom() {
+        let sum = measured(1.0, 0.3).plus(measured(2.0, 0.4));
+        assert_eq!((sum.value, sum.u), (3.0, 0.5));
+        assert!((63.0..126.0).contains(&sum.degrees_of_freedom));
+        let exact = measured(1.0, 0.3).plus(measured(2.0, 0.0));
+        assert_eq!((exact.value, exact.u), (3.0, 0.3));
+        assert!((exact.degrees_of_freedom - 63.0).abs() < 1e-9);
     }
 
     #[test]
