@@ -7,8 +7,10 @@ mod calibration;
 mod checks;
 pub mod oracle;
 mod records;
+pub mod rig;
 pub mod special;
 
 pub use calibration::{Calibration, calibrate};
 pub use checks::{Checks, LIMIT, Measured};
 pub use records::{Record, record, records};
+pub use rig::Budget;
