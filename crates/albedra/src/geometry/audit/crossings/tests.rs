@@ -217,12 +217,12 @@ fn concave_prism_is_sound_and_a_bar_through_its_notch_is_free() {
 fn worst_cases_are_bounded() {
     let unit = [DVec3::ZERO, DVec3::X, DVec3::Y];
     let count = 30_000;
-    // Measured in release builds; the limit here is generous because tests share a busy machine.
+    // Measured in release builds; without a bound it would be half a minute.
     let timed = |mesh: &Mesh| {
         let start = Instant::now();
         let audit = mesh.audit();
         assert!(
-            start.elapsed() < Duration::from_secs(2),
+            start.elapsed() < Duration::from_secs(10),
             "{:?}",
             start.elapsed()
         );
