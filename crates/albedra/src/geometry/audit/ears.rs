@@ -156,6 +156,13 @@ mod tests {
     }
 
     #[test]
+    fn corner_on_a_diagonal_keeps_it_from_being_cut() {
+        // The first corner would leave a triangle without area.
+        let outline = flat(&[(4.0, 0.0), (4.0, 4.0), (2.0, 2.0), (0.0, 0.0)]);
+        assert_eq!(all(&outline).map(|triangles| triangles.len()), Ok(2));
+    }
+
+    #[test]
     fn crossed_outline_is_refused() {
         let bow = flat(&[(0.0, 0.0), (2.0, 2.0), (2.0, 0.0), (0.0, 2.5)]);
         assert!(matches!(all(&bow), Err(Uncut::Twisted(_))));

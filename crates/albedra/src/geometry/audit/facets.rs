@@ -132,12 +132,13 @@ mod tests {
     fn repeated_corner_is_named_by_position_and_nothing_else_is() {
         let mut mesh = octahedron();
         let first = mesh.corners_of(0).to_vec();
-        mesh.push_facet(&[first[0], first[0], first[1]], 0);
-        let position = mesh.vertices[first[0] as usize];
-        assert_eq!(
-            mesh.audit().problems,
-            [Problem::RepeatedCorner { facet: 8, position }]
-        );
+        let [p, q] = [first[0], first[1]];
+        for corners in [[p, p, q], [p, q, p], [q, p, p]] {
+            mesh.push_facet(&corners, 0);
+        }
+        let position = mesh.vertices[p as usize];
+        let expected = [8, 9, 10].map(|facet| Problem::RepeatedCorner { facet, position });
+        assert_eq!(mesh.audit().problems, expected);
 
         // The same in a polygon, by another index at the same position.
         let mut mesh = unit_cube();
