@@ -19,6 +19,7 @@
 mod build;
 mod nearest;
 mod node;
+mod split;
 #[cfg(test)]
 mod tests;
 mod traverse;
@@ -104,7 +105,9 @@ impl Hierarchy {
     /// triangle that the ray has just left ([`Self::NOWHERE`] if none), never does. The nearest strike is taken, of
     /// equally near ones that of the smallest index. The direction has unit length, and the origin lies inside the mesh
     /// or on it, both but for rounding.
-    #[inline]
+    ///
+    /// Many rays are better served by [`Self::next_with`], since a new stack for each takes time.
+    #[inline(always)]
     pub(crate) fn next(&self, origin: [f64; 3], direction: [f64; 3], standing: u32) -> Option<Hit> {
         self.next_with(&mut Stack::new(), origin, direction, standing)
     }
