@@ -1,6 +1,6 @@
 //! Any mesh: the nearest facet that faces the photon, by a hierarchy of boxes.
 
-use super::hierarchy::Hierarchy;
+use super::hierarchy::{Hierarchy, Hit, Stack};
 use super::{Flight, Retries};
 use crate::engine::{Block, Level, NOWHERE, Stage};
 
@@ -17,10 +17,16 @@ impl Facets {
         Self { hierarchy, planes }
     }
 
-    /// The nearest triangle of a point, and the point put on its plane.
-    fn nearest(&self, point: [f64; 3]) -> (u32, [f64; 3]) {
-        let (_, triangle) = self.hierarchy.nearest_triangle(point);
-        (triangle, onto(point, self.planes[triangle as usize]))
+    /// Another try for a photon that found no wall, since rounding has put it a little outside: through the triangle
+    /// that it has slipped through already, else from the nearest one.
+    #[cold]
+    fn retry(&self, origin: &mut [f64; 3], direction: [f64; 3], standing: u32) -> Option<Hit> {
+        if let Some(hit) = self.hierarchy.overtaken(*origin, direction, standing) {
+            return Some(hit);
+        }
+        let (_, nearest) = self.hierarchy.nearest_triangle(*origin);
+        *origin = onto(*origin, *self.planes.get(nearest as usize)?);
+        self.hierarchy.next(*origin, direction, nearest)
     }
 }
 
@@ -57,6 +63,7 @@ impl Stage for Next<'_> {
             block,
             retries,
         } = self;
+        let mut stack = Stack::new();
         for lane in 0..block.live {
             let mut origin = [
                 block.position[0][lane],
@@ -70,17 +77,16 @@ impl Stage for Next<'_> {
             ];
             let surface = block.surface[lane];
             let standing = if surface == NOWHERE {
-                u32::MAX
+                Hierarchy::NOWHERE
             } else {
                 surface as u32
             };
-            let mut hit = facets.hierarchy.next(origin, direction, standing);
+            let mut hit = facets
+                .hierarchy
+                .next_with(&mut stack, origin, direction, standing);
             if hit.is_none() {
-                // Rounding has put the photon a little outside: once more from the nearest surface.
                 retries.retried += 1;
-                let (triangle, on_it) = facets.nearest(origin);
-                origin = on_it;
-                hit = facets.hierarchy.next(origin, direction, triangle);
+                hit = facets.retry(&mut origin, direction, standing);
             }
             let Some(hit) = hit else {
                 block.missed.push(lane as u16);

@@ -69,6 +69,7 @@ impl Outline {
     }
 
     /// Enclosed area in m², holes taken off.
+    #[cfg(test)]
     pub(crate) fn area(&self) -> f64 {
         let near = self.corners().next().unwrap_or_default();
         self.loops

@@ -29,6 +29,7 @@ pub(crate) struct PlanarWall {
 ///
 /// `None` also where a facet faces the other way, where an edge is used by more than two of its facets, where the wall has no
 /// area, and where the mesh's indices are out of range. The frame of a wall across an axis is exact.
+#[cfg(test)]
 pub(crate) fn planar_wall(mesh: &Mesh, wall: u32) -> Option<PlanarWall> {
     let facets: Option<Vec<_>> = (mesh.facet_walls.iter().enumerate())
         .filter(|&(_, &of)| of == wall)

@@ -13,8 +13,9 @@ pub(super) enum Inside {
     Convex { planes: Vec<[f64; 4]>, slack: f64 },
     /// A hierarchy of facets that are met from inside, and one of those met from outside.
     Facets {
-        leaving: Hierarchy,
-        entering: Hierarchy,
+        bounds: [[f64; 3]; 2],
+        leaving: Box<Hierarchy>,
+        entering: Box<Hierarchy>,
         slack: f64,
     },
 }
@@ -31,8 +32,9 @@ impl Inside {
                 Self::Convex { planes, slack }
             }
             None => Self::Facets {
-                leaving: solid.hierarchy(false),
-                entering: solid.hierarchy(true),
+                bounds: solid.bounds,
+                leaving: Box::new(solid.hierarchy(false)),
+                entering: Box::new(solid.hierarchy(true)),
                 slack,
             },
         }
@@ -47,8 +49,14 @@ impl Inside {
             Self::Convex { planes, slack } => planes.iter().all(|[a, b, c, offset]| {
                 a * point[0] + b * point[1] + c * point[2] - offset <= *slack
             }),
-            Self::Facets { leaving, slack, .. } => {
-                self.is_within(point) || leaving.nearest_triangle(point).0 <= *slack
+            Self::Facets {
+                bounds: [lower, upper],
+                leaving,
+                slack,
+                ..
+            } => {
+                (0..3).all(|i| lower[i] - slack <= point[i] && point[i] <= upper[i] + slack)
+                    && (self.is_within(point) || leaving.nearest_triangle(point).0 <= *slack)
             }
         }
     }
@@ -64,8 +72,8 @@ impl Inside {
         // Any direction will do; this one is along no axis.
         let direction = crate::source::unit([0.548, 0.307, 0.778]);
         match (
-            leaving.next(point, direction, u32::MAX),
-            entering.next(point, direction, u32::MAX),
+            leaving.next(point, direction, Hierarchy::NOWHERE),
+            entering.next(point, direction, Hierarchy::NOWHERE),
         ) {
             (Some(out), Some(into)) => out.t < into.t,
             (out, _) => out.is_some(),
@@ -86,7 +94,7 @@ pub(super) enum VolumeSite {
     Box {
         lower: [f64; 3],
         upper: [f64; 3],
-        inside: Box<Inside>,
+        inside: Inside,
     },
 }
 
@@ -100,7 +108,7 @@ impl VolumeSite {
             return Self::Box {
                 lower,
                 upper,
-                inside: Box::new(Inside::new(solid)),
+                inside: Inside::new(solid),
             };
         }
         // The mean of the vertices is inside a convex body; the middle of its bounding box need not be.
@@ -213,7 +221,7 @@ mod tests {
         // Both kinds of site must agree.
         let convex = VolumeSite::new(&enclosure.solid);
         let [lower, upper] = enclosure.solid.bounds;
-        let inside = Box::new(Inside::new(&enclosure.solid));
+        let inside = Inside::new(&enclosure.solid);
         let tested = VolumeSite::Box {
             lower,
             upper,

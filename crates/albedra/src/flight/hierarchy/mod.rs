@@ -113,6 +113,7 @@ impl Hierarchy {
     }
 
     /// Memory in bytes.
+    #[cfg(test)]
     pub(crate) fn bytes(&self) -> usize {
         size_of_val(self.nodes.as_slice())
             + size_of_val(self.facets.as_slice())
