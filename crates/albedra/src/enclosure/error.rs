@@ -27,6 +27,13 @@ pub enum EnclosureError {
         /// Names like it.
         near: Near,
     },
+    /// No wall of this name: regions lie on walls only.
+    UnknownWall {
+        /// What was given.
+        name: String,
+        /// Names of walls like it.
+        near: Near,
+    },
     /// The name is empty or taken, by a wall or by another region.
     Name {
         /// What was given.
@@ -68,6 +75,7 @@ impl fmt::Display for EnclosureError {
             Self::UnknownName { name, near } => {
                 write!(f, "no wall, region or opening is named \"{name}\"{near}")
             }
+            Self::UnknownWall { name, near } => write!(f, "no wall is named \"{name}\"{near}"),
             Self::Name { name } if name.is_empty() => write!(f, "a region must have a name"),
             Self::Name { name } => write!(f, "name \"{name}\" must be new, but is taken already"),
             Self::NotPlanar { wall } => write!(

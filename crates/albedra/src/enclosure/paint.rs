@@ -5,6 +5,7 @@ use serde::{Deserialize, Serialize};
 use super::{Enclosure, EnclosureError};
 use crate::coating::Coating;
 use crate::geometry::{PlanarWall, Region, RegionShape, visible_areas};
+use crate::near::Near;
 
 /// What a wall or a region does to light.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
@@ -75,7 +76,11 @@ impl Enclosure {
         finish: Finish,
     ) -> Result<Self, EnclosureError> {
         let Some(index) = self.solid.wall(wall) else {
-            return Err(self.unknown(wall));
+            let walls = self.solid.mesh.walls.iter().map(String::as_str);
+            return Err(EnclosureError::UnknownWall {
+                name: wall.to_owned(),
+                near: Near::to(wall, walls),
+            });
         };
         if name.is_empty()
             || self.solid.wall(name).is_some()

@@ -18,6 +18,12 @@ const TASK: u64 = 1024;
 /// Photons of a batch.
 const BATCH: u64 = TASK * GROUPS as u64;
 
+/// Memory that sums of unfinished batches may take: past it, photons that come after a long-lived one wait for it.
+const AHEAD: u64 = 16 << 20;
+
+/// How long a thread that is too far ahead sleeps before it looks again.
+const NAP: Duration = Duration::from_micros(200);
+
 /// How often progress is told and cancelling is asked for.
 const TICK: Duration = Duration::from_millis(50);
 
@@ -81,7 +87,12 @@ pub(crate) fn run(
 ) -> Result<(Totals, ControlFlow<()>), EngineError> {
     let plan = order.plan;
     let begun = Instant::now();
-    let (stop, ended, next) = (AtomicBool::new(false), AtomicU64::new(0), AtomicU64::new(0));
+    let (stop, ended) = (AtomicBool::new(false), AtomicU64::new(0));
+    let queue = Queue {
+        next: AtomicU64::new(0),
+        finished: AtomicU64::new(0),
+        ahead: batches_ahead(plan.outputs()),
+    };
     let place = Workplace {
         plan,
         seed: order.seed,
@@ -100,14 +111,17 @@ pub(crate) fn run(
     pool.in_place_scope(|scope| {
         let (sender, receiver) = sync_channel(2 * order.threads);
         for _ in 0..order.threads {
-            let (sender, place, next) = (sender.clone(), &place, &next);
-            scope.spawn(move |_| work(order, place, next, &sender));
+            let (sender, place, queue) = (sender.clone(), &place, &queue);
+            scope.spawn(move |_| work(order, place, queue, &sender));
         }
         drop(sender);
         let mut told = Instant::now();
         loop {
             match receiver.recv_timeout(TICK.saturating_sub(told.elapsed())) {
-                Ok((number, part)) => gathered.add(number, part),
+                Ok((number, part)) => {
+                    gathered.add(number, part);
+                    queue.finished.store(gathered.finished, Ordering::Relaxed);
+                }
                 Err(RecvTimeoutError::Timeout) => {}
                 Err(RecvTimeoutError::Disconnected) => break,
             }
@@ -130,22 +144,38 @@ pub(crate) fn run(
     Ok((gathered.totals, flow))
 }
 
+/// Which tasks are begun.
+struct Queue {
+    next: AtomicU64,
+    /// Batches that are in the totals.
+    finished: AtomicU64,
+    /// Batches that may be begun before the first of them is finished.
+    ahead: u64,
+}
+
+/// So many batches fit into the memory, but two at least, so that no thread waits for a batch's last task in vain.
+fn batches_ahead(outputs: usize) -> u64 {
+    let bytes = size_of::<[i128; GROUPS]>() as u64 * outputs as u64 + 1;
+    (AHEAD / bytes).clamp(2, 64)
+}
+
 /// Takes tasks in order until there are none left or the run stops.
-fn work(
-    order: &Order<'_>,
-    place: &Workplace<'_>,
-    next: &AtomicU64,
-    sender: &SyncSender<(u64, Part)>,
-) {
+fn work(order: &Order<'_>, place: &Workplace<'_>, queue: &Queue, sender: &SyncSender<(u64, Part)>) {
     let mut block = Block::new();
     while !place.stop.load(Ordering::Relaxed) {
-        let number = next.fetch_add(1, Ordering::Relaxed);
+        let number = queue.next.fetch_add(1, Ordering::Relaxed);
         let batch = number / GROUPS as u64;
         if batch
             .checked_mul(BATCH)
             .is_none_or(|before| before >= order.photons)
         {
             return;
+        }
+        while batch >= queue.finished.load(Ordering::Relaxed) + queue.ahead {
+            if place.stop.load(Ordering::Relaxed) {
+                return;
+            }
+            std::thread::sleep(NAP);
         }
         let Some(part) = task(order.first, order.photons, number).run(place, &mut block) else {
             return;

@@ -265,7 +265,7 @@ fn maps(experiment: &Experiment, first: usize) -> Result<Vec<MapLayout>, Experim
                 &request.wall,
                 enclosure.mesh().walls.iter().map(String::as_str),
             );
-            return Err(ExperimentError::UnknownName {
+            return Err(ExperimentError::UnknownWall {
                 name: request.wall.clone(),
                 near,
             });

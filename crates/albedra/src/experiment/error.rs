@@ -20,6 +20,13 @@ pub enum ExperimentError {
         /// Names like it.
         near: Near,
     },
+    /// No wall of this name: maps are of whole walls, with the regions on them.
+    UnknownWall {
+        /// What was given.
+        name: String,
+        /// Names of walls like it.
+        near: Near,
+    },
     /// No such output.
     UnknownOutput {
         /// What was given.
@@ -88,6 +95,9 @@ impl fmt::Display for ExperimentError {
             }
             Self::UnknownName { name, near } => {
                 write!(f, "no wall, region or opening is named \"{name}\"{near}")
+            }
+            Self::UnknownWall { name, near } => {
+                write!(f, "a map needs a wall, but none is named \"{name}\"{near}")
             }
             Self::UnknownOutput { name, near } => write!(f, "no output is named \"{name}\"{near}"),
             Self::SourceOutside {

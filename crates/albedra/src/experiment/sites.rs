@@ -6,6 +6,7 @@ use crate::enclosure::Solid;
 use crate::engine::{Lane, Surfaces};
 use crate::flight::Hierarchy;
 use crate::geometry::RegionShape;
+use crate::math::larger;
 use crate::near::Near;
 use crate::source::{
     Aim, DiskSite, Emitter, HEMISPHERE, Place, PointSite, Site, Source, Spot, Spread, sine_squared,
@@ -213,13 +214,14 @@ impl Stage<'_> {
 
 /// A direction brought to unit length.
 fn direction(source: usize, axis: [f64; 3]) -> Result<[f64; 3], ExperimentError> {
-    let found = unit(axis);
-    let length = found[0] * found[0] + found[1] * found[1] + found[2] * found[2];
-    if (length - 1.0).abs() < 1e-9 {
-        return Ok(found);
-    }
-    Err(ExperimentError::SourceDirection {
-        source,
-        required: "a direction must have a finite length above 0",
-    })
+    let largest = larger(larger(axis[0].abs(), axis[1].abs()), axis[2].abs());
+    // Divided by the largest component where squares of such lengths would leave the range.
+    let scaled = axis.map(|x| x / largest);
+    [unit(axis), unit(scaled)]
+        .into_iter()
+        .find(|[x, y, z]| (x * x + y * y + z * z - 1.0).abs() < 1e-9)
+        .ok_or(ExperimentError::SourceDirection {
+            source,
+            required: "a direction must have a finite length above 0",
+        })
 }

@@ -139,8 +139,9 @@ impl<'a> Trace<'a> {
             .checked_add(self.photons)
             .is_none_or(|end| end > PILOT)
         {
-            return Err(RunError::Photons {
-                value: self.photons,
+            return Err(RunError::Indices {
+                first: self.first,
+                photons: self.photons,
             });
         }
         let threads = self
@@ -261,10 +262,17 @@ fn photons_for(pilot: f64, target: f64, most: u64) -> u64 {
 pub enum RunError {
     /// The experiment cannot be traced.
     Experiment(ExperimentError),
-    /// No photons, or indices beyond 2⁶².
+    /// No photons.
     Photons {
         /// What was given.
         value: u64,
+    },
+    /// Photons with indices from 2⁶² on, which are kept for pilot runs.
+    Indices {
+        /// Index of the first photon.
+        first: u64,
+        /// Number of photons.
+        photons: u64,
     },
     /// Threads outside 1 to 4096.
     Threads {
@@ -299,9 +307,11 @@ impl fmt::Display for RunError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::Experiment(error) => error.fmt(f),
-            Self::Photons { value } => {
-                write!(f, "photons must number from 1 to 2^62 in all, got {value}")
-            }
+            Self::Photons { value } => write!(f, "photons must number at least 1, got {value}"),
+            Self::Indices { first, photons } => write!(
+                f,
+                "indices of photons must stay below 2^62, got {photons} photons from index {first} on"
+            ),
             Self::Threads { value } => write!(f, "threads must number from 1 to 4096, got {value}"),
             Self::NoThreads { reason } => write!(f, "the system gave no threads: {reason}"),
             Self::Lanes { value } => write!(f, "lanes must number from 1 to {LANES}, got {value}"),

@@ -5,6 +5,7 @@ use std::fmt;
 use glam::DVec3;
 use serde::{Deserialize, Serialize};
 
+use super::audit::Short;
 use super::outline::Bounds;
 use super::outline_check::{OutlineError, check_outline};
 use super::polygon::{self, Point};
@@ -90,16 +91,17 @@ impl fmt::Display for RegionError {
                 )
             }
             Self::Polygon(error) => error.fmt(f),
-            Self::OffWall { at, by } => {
-                write!(
-                    f,
-                    "region leaves its wall by {by:?} m at (u, v) = ({:?}, {:?}) m",
-                    at.0, at.1
-                )
-            }
+            Self::OffWall { at, by } => write!(
+                f,
+                "must lie on its wall, but leaves it by {} m at (u, v) = ({}, {}) m",
+                Short(*by),
+                Short(at.0),
+                Short(at.1)
+            ),
             Self::OverGap { area } => write!(
                 f,
-                "region lies across a gap of its wall: {area:?} m² are not on the wall"
+                "must lie on its wall, but crosses a gap of it: {} m² are off the wall",
+                Short(*area)
             ),
         }
     }
@@ -509,7 +511,7 @@ mod tests {
         .to_string();
         assert_eq!(
             text,
-            "region leaves its wall by 0.125 m at (u, v) = (0.5, -0.25) m"
+            "must lie on its wall, but leaves it by 0.125 m at (u, v) = (0.5, -0.25) m"
         );
         let text = Region::disk((0.0, 0.0), -1.0)
             .check()

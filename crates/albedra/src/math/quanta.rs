@@ -32,12 +32,15 @@ pub(crate) fn wide_quanta(x: f64) -> i128 {
     (i128::from(high) << 30) + i128::from(low)
 }
 
-/// The integer part of `x`, at most `last`; a whole number may give the integer below it.
+/// The integer part of `x`, but at most `count` − 1: the index among `count` items; a whole number may give the integer
+/// below it.
 ///
-/// `x` must not be negative; what is not a number gives `last`.
+/// `x` must not be negative; what is not a number gives the last index.
 #[inline(always)]
-pub(crate) fn index_below(x: f64, last: f64) -> u64 {
-    let capped = if x < last { x } else { last };
+pub(crate) fn index_below(x: f64, count: f64) -> u64 {
+    // Capped at the whole number instead, half of one less would be a tie, which rounds to `count` where that is even.
+    let most = count - 0.75;
+    let capped = if x < most { x } else { most };
     let half = capped - 0.5;
     let from = if half > 0.0 { half } else { 0.0 };
     (from + MAGIC).to_bits().wrapping_sub(MAGIC.to_bits())
@@ -82,11 +85,21 @@ mod tests {
 
     #[test]
     fn index_stays_within_its_range() {
-        assert_eq!(index_below(0.0, 7.0), 0);
-        assert_eq!(index_below(0.4, 7.0), 0);
-        assert_eq!(index_below(1.5, 7.0), 1);
-        assert_eq!(index_below(6.999, 7.0), 6);
-        assert_eq!(index_below(1e300, 7.0), 6);
-        assert_eq!(index_below(f64::NAN, 7.0), 6);
+        for count in 1..=70_u32 {
+            let all = f64::from(count);
+            for beyond in [all - 0.1, all, all + 0.25, 2.0 * all, 1e300, f64::NAN] {
+                assert_eq!(
+                    index_below(beyond, all),
+                    u64::from(count - 1),
+                    "{beyond} of {count}"
+                );
+            }
+            for k in 0..count {
+                assert_eq!(index_below(f64::from(k) + 0.1, all), u64::from(k));
+                assert_eq!(index_below(f64::from(k) + 0.9, all), u64::from(k));
+                let whole = index_below(f64::from(k), all);
+                assert!(whole == u64::from(k) || whole + 1 == u64::from(k));
+            }
+        }
     }
 }

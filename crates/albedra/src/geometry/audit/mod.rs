@@ -17,6 +17,7 @@ mod table;
 mod weld;
 
 pub use problem::Problem;
+pub(crate) use problem::Short;
 
 use super::Mesh;
 

@@ -315,7 +315,7 @@ impl fmt::Display for Metres {
 }
 
 /// A number to six digits, without trailing zeros.
-pub(super) struct Short(pub(super) f64);
+pub(crate) struct Short(pub(crate) f64);
 
 impl fmt::Display for Short {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
