@@ -124,15 +124,18 @@ def _flux(outcome: Outcome, ax: Axes) -> Axes:
         half = np.array([interval.high for interval in intervals]) - values
         half = np.where(np.isfinite(half), half, 0.0)
         style = {"ecolor": "black", "elinewidth": 1.0, "capsize": 2.5}
+        if kind == "incident":
+            for place, estimate, end in zip(places, estimates, values + half, strict=True):
+                ax.annotate(f" {estimate}", (end, place + shift), va="center", fontsize=7)
         ax.barh(places + shift, values, 0.25, color=colour, xerr=half, error_kw=style, label=label)
     ax.set_yticks(places, names)
     ax.invert_yaxis()
-    ax.set_xlim(left=0)
+    ax.set_xlim(0, 1.35 * ax.get_xlim()[1])
     ax.set_xlabel("radiant flux / W (bars: 95 % coverage)")
     ax.set_title("flux", loc="left")
     ax.grid(True, axis="x", alpha=0.3)
     ax.set_axisbelow(True)
-    ax.legend(frameon=False, loc="best")
+    ax.legend(frameon=False, loc="lower right")
     return ax
 
 

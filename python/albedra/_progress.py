@@ -10,7 +10,7 @@ if TYPE_CHECKING:
 
     from ._albedra import Progress
 
-WIDTH = 24
+WIDTH = 10
 """Characters of the bar."""
 
 LINE_EVERY = 5.0
@@ -43,7 +43,7 @@ def close(teller: object, complete: bool) -> None:
 def line(progress: Progress) -> str:
     """Write a state in one line: share, photons, rate, time left, relative uncertainty."""
     share = min(1.0, progress.done / max(1, progress.wanted))
-    parts = [f"{100 * share:5.1f} %", f"{_si(progress.done)} of {_si(progress.wanted)} photons"]
+    parts = [f"{100 * share:5.1f} %", f"{_si(progress.done)}/{_si(progress.wanted)} photons"]
     if progress.rate > 0:
         parts.append(f"{_si(progress.rate)}/s")
     if progress.left is not None and share < 1:
@@ -152,4 +152,6 @@ def _clock(seconds: float) -> str:
         return f"{seconds:.1f} s" if seconds < 10 else f"{seconds:.0f} s"
     minutes, seconds = divmod(round(seconds), 60)
     hours, minutes = divmod(minutes, 60)
+    if hours >= 100:
+        return f"{hours} h"
     return f"{hours} h {minutes:02d} min" if hours else f"{minutes} min {seconds:02d} s"

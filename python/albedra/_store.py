@@ -133,7 +133,7 @@ def _variable(
 
 
 def _read(file: h5py.File) -> dict[str, Any]:
-    attributes = file.attrs
+    attributes = dict(file.attrs)
     if attributes.get("format") != FORMAT:
         raise ValueError(f"its attribute format must be {FORMAT!r}, got {attributes.get('format')!r}")
     version = int(attributes["format_version"])
@@ -157,7 +157,7 @@ def _read(file: h5py.File) -> dict[str, Any]:
 
 def _reason(error: BaseException) -> str:
     """Give the text of an error; that of a KeyError is written in quotes."""
-    return str(error.args[0]) if isinstance(error, KeyError) and error.args else str(error)
+    return f"{error.args[0]} is missing" if isinstance(error, KeyError) and error.args else str(error)
 
 
 def _mode(path: Path) -> int:
