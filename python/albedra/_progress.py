@@ -121,7 +121,7 @@ class _NotebookBar:
 
 def _notebook_bar() -> _NotebookBar | None:
     try:
-        from tqdm.auto import tqdm
+        from tqdm.auto import tqdm  # type: ignore[import-untyped, unused-ignore]
     except ImportError:
         return None
     return _NotebookBar(tqdm)
@@ -131,7 +131,7 @@ def _in_notebook() -> bool:
     """Tell whether a kernel runs us; one that does has imported its own package."""
     if "ipykernel" not in sys.modules:
         return False
-    from IPython import get_ipython
+    from IPython import get_ipython  # type: ignore[import-not-found, unused-ignore]
 
     return get_ipython() is not None
 

@@ -5,14 +5,11 @@ from __future__ import annotations
 import os
 import tempfile
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
 import numpy as np
 
 from ._albedra import Outcome, __version__
-
-if TYPE_CHECKING:
-    import h5py
 
 FORMAT = "albedra outcome"
 """Attribute `format` of our files."""
@@ -28,7 +25,7 @@ NO_SCALE = b"This is a netCDF dimension but not a netCDF variable."
 
 def save(outcome: Outcome, path: str | os.PathLike[str]) -> None:
     """Save an outcome; a crash leaves the old file or the new one, never a part of one."""
-    import h5py
+    import h5py  # type: ignore[import-untyped, unused-ignore]
 
     path = Path(path)
     handle, beside = tempfile.mkstemp(prefix=f".{path.name}.", suffix=".part", dir=path.parent)
@@ -76,7 +73,7 @@ def load(path: str | os.PathLike[str]) -> Outcome:
     ...     al.load(pathlib.Path(folder, "run.nc")) == result
     True
     """
-    import h5py
+    import h5py  # type: ignore[import-untyped, unused-ignore]
 
     path = Path(path)
     with path.open("rb"):
@@ -88,7 +85,7 @@ def load(path: str | os.PathLike[str]) -> Outcome:
         raise ValueError(f"{path} is no whole outcome of albedra: {_reason(error)}") from error
 
 
-def _write(file: h5py.File, parts: dict[str, Any]) -> None:
+def _write(file: Any, parts: dict[str, Any]) -> None:
     file.attrs["format"] = FORMAT
     file.attrs["format_version"] = VERSION
     file.attrs["program_version"] = __version__
@@ -115,7 +112,7 @@ def _write(file: h5py.File, parts: dict[str, Any]) -> None:
 
 
 def _variable(
-    file: h5py.File,
+    file: Any,
     name: str,
     values: np.ndarray[Any, Any],
     dimensions: tuple[str, ...],
@@ -132,7 +129,7 @@ def _variable(
         variable.dims[axis].attach_scale(file[dimension])
 
 
-def _read(file: h5py.File) -> dict[str, Any]:
+def _read(file: Any) -> dict[str, Any]:
     attributes = dict(file.attrs)
     if attributes.get("format") != FORMAT:
         raise ValueError(f"its attribute format must be {FORMAT!r}, got {attributes.get('format')!r}")

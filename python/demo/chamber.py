@@ -60,9 +60,8 @@ def main() -> None:
 
     leaf, port = result.flux["leaf"], result.flux["detector"]
     print(f"leaf: irradiance {result.irradiance['leaf']}, straight from the lamp {leaf.direct}")
-    print(
-        f"detector: {port.escaped} escapes, {result.ratio('detector.escaped', 'ledger.emitted')} of the lamp's flux"
-    )
+    share = result.ratio("detector.escaped", "ledger.emitted")
+    print(f"detector: {port.escaped} escapes, {share} of the lamp's flux")
 
     arguments.out.mkdir(parents=True, exist_ok=True)
     for kind in ("decay", "flux", "map"):

@@ -124,7 +124,7 @@ def test_a_bar_keeps_to_its_line():
     bar(al.Progress._rebuild(10**11, 10**12, 3e5, 3.3e5, 2.7e6, 0.0123))
     bar.close(complete=False)
     (line, end) = stream.getvalue().split("\n")
-    assert line.startswith("\r[##")
+    assert line.startswith("\r[#...")
     assert "u 1.2 %" in line
     assert "100 G/1 T photons  330 k/s  750 h left" in line
     assert len(line) <= 80 + len("  stopped")

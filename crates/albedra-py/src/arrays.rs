@@ -1,9 +1,7 @@
 //! Arguments that are arrays or counts, and results that are arrays.
 
 use numpy::ndarray::Array2;
-use numpy::{
-    IntoPyArray, PyArray1, PyArray2, PyArrayDyn, PyArrayMethods, PyUntypedArrayMethods,
-};
+use numpy::{IntoPyArray, PyArray1, PyArray2, PyArrayDyn, PyArrayMethods, PyUntypedArrayMethods};
 use pyo3::exceptions::{PyTypeError, PyValueError};
 use pyo3::prelude::*;
 use pyo3::types::PyDict;
@@ -32,7 +30,10 @@ pub(crate) fn share2(py: Python<'_>, values: Vec<f64>, shape: (usize, usize)) ->
 
 /// Whether two results have equal bits, so that NaN equals itself.
 pub(crate) fn same(py: Python<'_>, a: &Shared, b: &Shared) -> bool {
-    equal(a.bind(py).readonly().as_slice(), b.bind(py).readonly().as_slice())
+    equal(
+        a.bind(py).readonly().as_slice(),
+        b.bind(py).readonly().as_slice(),
+    )
 }
 
 /// The same for tables.
@@ -86,9 +87,17 @@ fn converted<'py>(
     let py = value.py();
     let numpy = py.import("numpy")?;
     let wrong = |cause: Option<PyErr>| {
-        let what = value.get_type().name().map_or_else(|_| "?".to_owned(), |n| n.to_string());
-        let of = if kinds.contains('f') { "numbers" } else { "whole numbers" };
-        let error = PyTypeError::new_err(format!("{argument} must be an array of {of}, got {what}"));
+        let what = value
+            .get_type()
+            .name()
+            .map_or_else(|_| "?".to_owned(), |n| n.to_string());
+        let of = if kinds.contains('f') {
+            "numbers"
+        } else {
+            "whole numbers"
+        };
+        let error =
+            PyTypeError::new_err(format!("{argument} must be an array of {of}, got {what}"));
         error.set_cause(py, cause);
         error
     };
@@ -118,7 +127,10 @@ fn place(mut at: usize, shape: &[usize]) -> String {
 }
 
 /// So many numbers, as a position or a size.
-pub(crate) fn vector<const N: usize>(argument: &str, value: &Bound<'_, PyAny>) -> PyResult<[f64; N]> {
+pub(crate) fn vector<const N: usize>(
+    argument: &str,
+    value: &Bound<'_, PyAny>,
+) -> PyResult<[f64; N]> {
     let array = numbers(argument, value)?;
     let readonly = array.readonly();
     <[f64; N]>::try_from(readonly.as_slice()?)
@@ -168,12 +180,19 @@ pub(crate) fn count<T: TryFrom<u64>>(argument: &str, value: &Bound<'_, PyAny>) -
         .import("operator")?
         .call_method1("index", (value,))
         .map_err(|_| {
-            let text = value.repr().map_or_else(|_| "?".to_owned(), |text| text.to_string());
+            let text = value
+                .repr()
+                .map_or_else(|_| "?".to_owned(), |text| text.to_string());
             PyTypeError::new_err(format!("{argument} must be a whole number, got {text}"))
         })?;
-    let number: Option<T> = whole.extract::<u64>().ok().and_then(|n| T::try_from(n).ok());
+    let number: Option<T> = whole
+        .extract::<u64>()
+        .ok()
+        .and_then(|n| T::try_from(n).ok());
     number.ok_or_else(|| {
         let most = 8 * size_of::<T>();
-        PyValueError::new_err(format!("{argument} must lie in [0, 2^{most} - 1], got {whole}"))
+        PyValueError::new_err(format!(
+            "{argument} must lie in [0, 2^{most} - 1], got {whole}"
+        ))
     })
 }

@@ -33,7 +33,9 @@ impl Coating {
     ///     Share of the light that is reflected, in [0, 1].
     #[staticmethod]
     fn lambertian(reflectance: f64) -> PyResult<Self> {
-        albedra::Coating::lambertian(reflectance).map(Self).map_err(raise)
+        albedra::Coating::lambertian(reflectance)
+            .map(Self)
+            .map_err(raise)
     }
 
     /// Reflects as a mirror.
@@ -44,7 +46,9 @@ impl Coating {
     ///     Share of the light that is reflected, in [0, 1].
     #[staticmethod]
     fn mirror(reflectance: f64) -> PyResult<Self> {
-        albedra::Coating::mirror(reflectance).map(Self).map_err(raise)
+        albedra::Coating::mirror(reflectance)
+            .map(Self)
+            .map_err(raise)
     }
 
     /// Reflects a share of the reflected light as a mirror and the rest by the cosine law.
@@ -58,7 +62,9 @@ impl Coating {
     #[staticmethod]
     #[pyo3(signature = (reflectance, *, specular_share))]
     fn mixed(reflectance: f64, specular_share: f64) -> PyResult<Self> {
-        albedra::Coating::mixed(reflectance, specular_share).map(Self).map_err(raise)
+        albedra::Coating::mixed(reflectance, specular_share)
+            .map(Self)
+            .map_err(raise)
     }
 
     /// Reflects nothing.
@@ -96,7 +102,10 @@ impl Coating {
             (_, 0.0) => format!("Coating.lambertian({reflectance})"),
             (_, 1.0) => format!("Coating.mirror({reflectance})"),
             (_, share) => {
-                format!("Coating.mixed({reflectance}, specular_share={})", number(share))
+                format!(
+                    "Coating.mixed({reflectance}, specular_share={})",
+                    number(share)
+                )
             }
         }
     }

@@ -21,7 +21,9 @@ fn of_outcome<'py>(
 ) -> PyResult<Bound<'py, PyAny>> {
     let outcome = Outcome::of(Arc::clone(outcome));
     let getattr = py.import("builtins")?.getattr("getattr")?;
-    Ok((getattr, (outcome, attribute)).into_pyobject(py)?.into_any())
+    Ok((getattr, (outcome, attribute))
+        .into_pyobject(py)?
+        .into_any())
 }
 
 /// Energy inside after a short pulse, at the edges of the time grid.
@@ -105,7 +107,11 @@ impl Decay {
                 let text = format!("stop must be above start {start} s, got {stop}");
                 return Err(PyValueError::new_err(text));
             }
-            _ => return Err(PyValueError::new_err("start and stop must be given together")),
+            _ => {
+                return Err(PyValueError::new_err(
+                    "start and stop must be given together",
+                ));
+            }
         };
         let time = self.outcome.decay_time(window).ok_or_else(|| {
             PyValueError::new_err("the window must hold at least five edges with energy left")
@@ -173,7 +179,11 @@ pub(crate) struct Curve {
 
 impl Curve {
     pub(crate) fn of(py: Python<'_>, outcome: &Arc<albedra::Outcome>, on: bool) -> Self {
-        let curve = if on { outcome.switch_on() } else { outcome.switch_off() };
+        let curve = if on {
+            outcome.switch_on()
+        } else {
+            outcome.switch_off()
+        };
         Self {
             outcome: Arc::clone(outcome),
             on,
@@ -218,11 +228,19 @@ impl Curve {
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
-        of_outcome(py, &self.outcome, if self.on { "switch_on" } else { "switch_off" })
+        of_outcome(
+            py,
+            &self.outcome,
+            if self.on { "switch_on" } else { "switch_off" },
+        )
     }
 
     fn __repr__(&self) -> &'static str {
-        if self.on { "<Curve: lamp on>" } else { "<Curve: lamp off>" }
+        if self.on {
+            "<Curve: lamp on>"
+        } else {
+            "<Curve: lamp off>"
+        }
     }
 }
 
@@ -306,7 +324,11 @@ pub(crate) struct Map {
 }
 
 impl Map {
-    pub(crate) fn of(py: Python<'_>, outcome: &Arc<albedra::Outcome>, map: albedra::Map) -> PyResult<Self> {
+    pub(crate) fn of(
+        py: Python<'_>,
+        outcome: &Arc<albedra::Outcome>,
+        map: albedra::Map,
+    ) -> PyResult<Self> {
         let shape = (map.v_edges.len() - 1, map.u_edges.len() - 1);
         Ok(Self {
             outcome: Arc::clone(outcome),
@@ -377,7 +399,9 @@ impl Map {
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
         let rebuild = py.get_type::<Self>().getattr("_rebuild")?;
         let outcome = Outcome::of(Arc::clone(&self.outcome));
-        Ok((rebuild, (outcome, &self.wall)).into_pyobject(py)?.into_any())
+        Ok((rebuild, (outcome, &self.wall))
+            .into_pyobject(py)?
+            .into_any())
     }
 
     #[staticmethod]

@@ -133,8 +133,10 @@ impl Enclosure {
         coating: Option<Coating>,
         medium: Option<Medium>,
     ) -> PyResult<Self> {
-        let outline: Vec<_> =
-            points("outline", outline)?.into_iter().map(|[x, y]| (x, y)).collect();
+        let outline: Vec<_> = points("outline", outline)?
+            .into_iter()
+            .map(|[x, y]| (x, y))
+            .collect();
         let enclosure = albedra::Enclosure::extruded(&outline, height).map_err(raise)?;
         Self::finished(enclosure, coating.as_ref(), &None, medium.as_ref())
     }
@@ -172,7 +174,9 @@ impl Enclosure {
         medium: Option<Medium>,
     ) -> PyResult<Self> {
         let mesh = mesh::from_arrays(vertices, faces, walls)?;
-        let enclosure = py.detach(|| albedra::Enclosure::from_mesh(mesh)).map_err(raise)?;
+        let enclosure = py
+            .detach(|| albedra::Enclosure::from_mesh(mesh))
+            .map_err(raise)?;
         Self::finished(enclosure, coating.as_ref(), &coatings, medium.as_ref())
     }
 
@@ -201,7 +205,9 @@ impl Enclosure {
     ///     If the file is damaged or its mesh does not enclose one body.
     #[staticmethod]
     #[pyo3(signature = (path, *, unit, coating = None, coatings = None, openings = None, medium = None))]
-    #[pyo3(text_signature = "(path, *, unit, coating=None, coatings=None, openings=(), medium=None)")]
+    #[pyo3(
+        text_signature = "(path, *, unit, coating=None, coatings=None, openings=(), medium=None)"
+    )]
     fn load(
         py: Python<'_>,
         path: PathBuf,
@@ -211,9 +217,14 @@ impl Enclosure {
         openings: Option<Vec<String>>,
         medium: Option<Medium>,
     ) -> PyResult<Self> {
-        let unit: albedra::Unit = unit.parse().map_err(|error: albedra::UnitError| raise(error))?;
-        let enclosure = py.detach(|| albedra::Enclosure::load(path, unit)).map_err(raise)?;
-        let mut enclosure = Self::finished(enclosure, coating.as_ref(), &coatings, medium.as_ref())?;
+        let unit: albedra::Unit = unit
+            .parse()
+            .map_err(|error: albedra::UnitError| raise(error))?;
+        let enclosure = py
+            .detach(|| albedra::Enclosure::load(path, unit))
+            .map_err(raise)?;
+        let mut enclosure =
+            Self::finished(enclosure, coating.as_ref(), &coatings, medium.as_ref())?;
         for name in openings.unwrap_or_default() {
             enclosure = Self(enclosure.0.opened(&name).map_err(raise)?);
         }
@@ -229,7 +240,11 @@ impl Enclosure {
     /// coating : Coating
     ///     Its new coating.
     fn with_coating(&self, name: &str, coating: Coating) -> PyResult<Self> {
-        self.0.clone().with_coating(name, coating.0).map(Self).map_err(raise)
+        self.0
+            .clone()
+            .with_coating(name, coating.0)
+            .map(Self)
+            .map_err(raise)
     }
 
     /// Paints a region of a planar wall with another coating; later paint covers earlier.
@@ -246,7 +261,11 @@ impl Enclosure {
     ///     What it does to light.
     #[pyo3(signature = (name, *, wall, region, coating))]
     fn paint(&self, name: &str, wall: &str, region: Region, coating: Coating) -> PyResult<Self> {
-        self.0.clone().paint(name, wall, region.0, coating.0).map(Self).map_err(raise)
+        self.0
+            .clone()
+            .paint(name, wall, region.0, coating.0)
+            .map(Self)
+            .map_err(raise)
     }
 
     /// Opens a region of a planar wall, or a whole wall: light that meets it has escaped.
@@ -260,7 +279,12 @@ impl Enclosure {
     /// region : Region, optional
     ///     The outline, in the wall's own coordinates; by default the whole wall.
     #[pyo3(signature = (name, *, wall = None, region = None))]
-    fn with_opening(&self, name: &str, wall: Option<&str>, region: Option<Region>) -> PyResult<Self> {
+    fn with_opening(
+        &self,
+        name: &str,
+        wall: Option<&str>,
+        region: Option<Region>,
+    ) -> PyResult<Self> {
         let enclosure = self.0.clone();
         let opened = match (wall, region) {
             (Some(wall), Some(region)) => enclosure.with_opening(name, wall, region.0),
@@ -327,12 +351,17 @@ impl Enclosure {
     #[pyo3(signature = (text, mesh))]
     fn _rebuild(py: Python<'_>, text: &str, mesh: Option<&[u8]>) -> PyResult<Self> {
         let mesh = mesh::from_bytes(mesh)?;
-        py.detach(|| albedra::Enclosure::from_text(text, mesh)).map(Self).map_err(raise)
+        py.detach(|| albedra::Enclosure::from_text(text, mesh))
+            .map(Self)
+            .map_err(raise)
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Reduced<'py>> {
         let rebuild = py.get_type::<Self>().getattr("_rebuild")?;
-        Ok((rebuild, (self.0.to_text(), mesh::to_bytes(py, self.0.mesh_beside()))))
+        Ok((
+            rebuild,
+            (self.0.to_text(), mesh::to_bytes(py, self.0.mesh_beside())),
+        ))
     }
 
     fn __repr__(&self) -> String {
@@ -345,7 +374,9 @@ impl Enclosure {
             short(self.0.area()),
             short(self.0.mean_chord())
         );
-        fitting(full, || format!("<Enclosure: {} walls, {regions} regions>", walls.len()))
+        fitting(full, || {
+            format!("<Enclosure: {} walls, {regions} regions>", walls.len())
+        })
     }
 }
 

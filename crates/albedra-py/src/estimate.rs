@@ -167,14 +167,15 @@ impl Estimate {
     fn __repr__(&self, py: Python<'_>) -> PyResult<String> {
         let e = &self.inner;
         let [value, u, freedom] = [e.value, e.u, e.degrees_of_freedom].map(number);
-        let mut full = format!("Estimate({value}, {u}, {freedom}");
+        let mut arguments = vec![value, u, freedom];
         if let Some(upper) = e.upper {
-            full += &format!(", upper={}", number(upper));
+            arguments.push(format!("upper={}", number(upper)));
         }
         if !self.unit.is_empty() {
-            full += &format!(", unit={}", quoted(py, &self.unit)?);
+            arguments.push(format!("unit={}", quoted(py, &self.unit)?));
         }
-        Ok(fitting(full + ")", || format!("<Estimate: {}>", self.__str__())))
+        let full = format!("Estimate({})", arguments.join(", "));
+        Ok(fitting(full, || format!("<Estimate: {}>", self.__str__())))
     }
 
     fn __getnewargs_ex__<'py>(

@@ -55,8 +55,13 @@ pub(crate) struct Experiment(pub(crate) Arc<albedra::Experiment>);
 
 fn sources(source: &Bound<'_, PyAny>) -> PyResult<Vec<albedra::Source>> {
     let wrong = |what: &Bound<'_, PyAny>| {
-        let name = what.get_type().name().map_or_else(|_| "?".to_owned(), |n| n.to_string());
-        PyTypeError::new_err(format!("source must be a Source or a sequence of them, got {name}"))
+        let name = what
+            .get_type()
+            .name()
+            .map_or_else(|_| "?".to_owned(), |n| n.to_string());
+        PyTypeError::new_err(format!(
+            "source must be a Source or a sequence of them, got {name}"
+        ))
     };
     if let Ok(one) = source.extract::<Source>() {
         return Ok(vec![one.0]);
@@ -67,7 +72,9 @@ fn sources(source: &Bound<'_, PyAny>) -> PyResult<Vec<albedra::Source>> {
         all.push(item.extract::<Source>().map_err(|_| wrong(&item))?.0);
     }
     if all.is_empty() {
-        return Err(PyValueError::new_err("source must hold at least one Source, got none"));
+        return Err(PyValueError::new_err(
+            "source must hold at least one Source, got none",
+        ));
     }
     Ok(all)
 }
@@ -102,7 +109,9 @@ impl Experiment {
             for item in maps.items()? {
                 let (wall, cells): (String, Bound<'_, PyAny>) = item.extract()?;
                 let pair: (Bound<'_, PyAny>, Bound<'_, PyAny>) = cells.extract().map_err(|_| {
-                    PyTypeError::new_err(format!("maps[{wall:?}] must be (cells along u, cells along v)"))
+                    PyTypeError::new_err(format!(
+                        "maps[{wall:?}] must be (cells along u, cells along v)"
+                    ))
                 })?;
                 let argument = format!("maps[{wall:?}]");
                 let (nu, nv) = (count(&argument, &pair.0)?, count(&argument, &pair.1)?);
@@ -159,7 +168,9 @@ impl Experiment {
     #[pyo3(signature = (
         photons, *, seed = None, threads = None, first = None, target = None, resume = None, progress = None
     ))]
-    #[pyo3(text_signature = "(photons, *, seed=0, threads=None, first=0, target=None, resume=None, progress=None)")]
+    #[pyo3(
+        text_signature = "($self, photons, *, seed=0, threads=None, first=0, target=None, resume=None, progress=None)"
+    )]
     #[expect(clippy::too_many_arguments, reason = "all but one are options by name")]
     fn trace(
         &self,
@@ -178,7 +189,9 @@ impl Experiment {
         let order = Order {
             photons: count("photons", photons)?,
             seed: number("seed", seed)?,
-            threads: threads.map(|threads| count("threads", threads)).transpose()?,
+            threads: threads
+                .map(|threads| count("threads", threads))
+                .transpose()?,
             first: number("first", first)?,
             target,
             resume: resume.map(|outcome| Arc::clone(&outcome.get().inner)),
@@ -195,7 +208,10 @@ impl Experiment {
     /// The sources.
     #[getter]
     fn sources<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
-        PyTuple::new(py, self.0.sources().iter().map(|source| Source(source.clone())))
+        PyTuple::new(
+            py,
+            self.0.sources().iter().map(|source| Source(source.clone())),
+        )
     }
 
     /// The time grid that was given, or None.
@@ -241,13 +257,18 @@ impl Experiment {
     #[pyo3(signature = (text, mesh))]
     fn _rebuild(py: Python<'_>, text: &str, mesh: Option<&[u8]>) -> PyResult<Self> {
         let mesh = mesh::from_bytes(mesh)?;
-        let experiment = py.detach(|| albedra::Experiment::from_text(text, mesh)).map_err(raise)?;
+        let experiment = py
+            .detach(|| albedra::Experiment::from_text(text, mesh))
+            .map_err(raise)?;
         Ok(Self(Arc::new(experiment)))
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Reduced<'py>> {
         let rebuild = py.get_type::<Self>().getattr("_rebuild")?;
-        Ok((rebuild, (self.0.to_text(), mesh::to_bytes(py, self.0.mesh_beside()))))
+        Ok((
+            rebuild,
+            (self.0.to_text(), mesh::to_bytes(py, self.0.mesh_beside())),
+        ))
     }
 
     fn __repr__(&self, py: Python<'_>) -> PyResult<String> {

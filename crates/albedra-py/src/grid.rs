@@ -44,7 +44,9 @@ impl TimeGrid {
     #[new]
     #[pyo3(signature = (*, stop, bins))]
     fn new(stop: f64, bins: &Bound<'_, PyAny>) -> PyResult<Self> {
-        albedra::TimeGrid::new(stop, count("bins", bins)?).map(Self::of).map_err(raise)
+        albedra::TimeGrid::new(stop, count("bins", bins)?)
+            .map(Self::of)
+            .map_err(raise)
     }
 
     /// Bins between given edges.
@@ -55,13 +57,17 @@ impl TimeGrid {
     ///     Rising edges in s, the first of which is 0.
     #[staticmethod]
     fn from_edges(edges: &Bound<'_, PyAny>) -> PyResult<Self> {
-        albedra::TimeGrid::from_edges(list("edges", edges)?).map(Self::of).map_err(raise)
+        albedra::TimeGrid::from_edges(list("edges", edges)?)
+            .map(Self::of)
+            .map_err(raise)
     }
 
     /// Edges in s.
     #[getter]
     fn edges<'py>(&self, py: Python<'py>) -> &Bound<'py, numpy::PyArray1<f64>> {
-        self.edges.get_or_init(|| share(py, self.grid.edges().to_vec())).bind(py)
+        self.edges
+            .get_or_init(|| share(py, self.grid.edges().to_vec()))
+            .bind(py)
     }
 
     /// Number of bins.
@@ -78,7 +84,9 @@ impl TimeGrid {
 
     #[staticmethod]
     fn _rebuild(stop: f64, bins: usize) -> PyResult<Self> {
-        albedra::TimeGrid::new(stop, bins).map(Self::of).map_err(raise)
+        albedra::TimeGrid::new(stop, bins)
+            .map(Self::of)
+            .map_err(raise)
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
@@ -103,8 +111,9 @@ impl TimeGrid {
             return format!("TimeGrid(stop={stop}, bins={bins})");
         }
         let edges: Vec<String> = self.grid.edges().iter().map(|&edge| number(edge)).collect();
-        fitting(format!("TimeGrid.from_edges([{}])", edges.join(", ")), || {
-            format!("<TimeGrid: {bins} bins up to {stop} s>")
-        })
+        fitting(
+            format!("TimeGrid.from_edges([{}])", edges.join(", ")),
+            || format!("<TimeGrid: {bins} bins up to {stop} s>"),
+        )
     }
 }

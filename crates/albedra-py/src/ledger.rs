@@ -200,7 +200,11 @@ impl Progress {
             done: photons,
             wanted: photons,
             elapsed,
-            rate: if elapsed > 0.0 { photons as f64 / elapsed } else { 0.0 },
+            rate: if elapsed > 0.0 {
+                photons as f64 / elapsed
+            } else {
+                0.0
+            },
             left: Some(0.0),
             relative_uncertainty: last.and_then(|last| last.relative_uncertainty),
         }

@@ -1,4 +1,14 @@
 //! The compiled half of the Python package `albedra`: it converts arguments and results, and holds no physics.
+#![allow(
+    clippy::doc_markdown,
+    clippy::doc_link_with_quotes,
+    reason = "these are Python's docstrings, in the form of numpydoc"
+)]
+#![allow(
+    clippy::needless_pass_by_value,
+    clippy::unused_self,
+    reason = "arguments are handed over by Python, and methods must be methods there"
+)]
 
 mod arrays;
 mod coating;
@@ -58,7 +68,10 @@ mod _albedra {
     #[pymodule_init]
     fn init(module: &Bound<'_, PyModule>) -> PyResult<()> {
         // What an exception says that was not raised by a run.
-        module.py().get_type::<Interrupted>().setattr("result", module.py().None())?;
+        module
+            .py()
+            .get_type::<Interrupted>()
+            .setattr("result", module.py().None())?;
         module.add("__version__", env!("CARGO_PKG_VERSION"))
     }
 }

@@ -33,7 +33,9 @@ impl Medium {
     #[new]
     #[pyo3(signature = (group_index = 1.0, absorption = 0.0))]
     fn new(group_index: f64, absorption: f64) -> PyResult<Self> {
-        albedra::Medium::new(group_index, absorption).map(Self).map_err(raise)
+        albedra::Medium::new(group_index, absorption)
+            .map(Self)
+            .map_err(raise)
     }
 
     /// Group index.
@@ -59,6 +61,10 @@ impl Medium {
     }
 
     fn __repr__(&self) -> String {
-        format!("Medium({}, {})", number(self.0.group_index()), number(self.0.absorption()))
+        format!(
+            "Medium({}, {})",
+            number(self.0.group_index()),
+            number(self.0.absorption())
+        )
     }
 }

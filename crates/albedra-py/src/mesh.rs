@@ -19,7 +19,10 @@ pub(crate) fn from_arrays(
     walls: Option<&Bound<'_, PyAny>>,
 ) -> PyResult<Mesh> {
     let mut mesh = Mesh {
-        vertices: points::<3>("vertices", vertices)?.into_iter().map(DVec3::from_array).collect(),
+        vertices: points::<3>("vertices", vertices)?
+            .into_iter()
+            .map(DVec3::from_array)
+            .collect(),
         ..Mesh::default()
     };
     let faces = corners(faces, mesh.vertices.len())?;
@@ -36,7 +39,9 @@ fn corners(faces: &Bound<'_, PyAny>, vertices: usize) -> PyResult<Vec<Vec<u32>>>
     let checked = |face: usize, row: &[i64]| {
         let wrong = |index| {
             let most = vertices.saturating_sub(1);
-            PyValueError::new_err(format!("faces[{face}] must hold indices in [0, {most}], got {index}"))
+            PyValueError::new_err(format!(
+                "faces[{face}] must hold indices in [0, {most}], got {index}"
+            ))
         };
         let known = |&index: &i64| {
             u32::try_from(index)
@@ -77,7 +82,9 @@ fn names(walls: Option<&Bound<'_, PyAny>>, faces: usize) -> PyResult<Vec<String>
     if let Ok(name) = walls.cast::<PyString>() {
         return Ok(vec![name.to_string()]);
     }
-    let wrong = || PyTypeError::new_err("walls must be a name, or a list with the name of each face's wall");
+    let wrong = || {
+        PyTypeError::new_err("walls must be a name, or a list with the name of each face's wall")
+    };
     let names: Vec<String> = walls.extract().map_err(|_| wrong())?;
     if names.len() != faces {
         return Err(PyValueError::new_err(format!(
@@ -96,5 +103,7 @@ pub(crate) fn to_bytes<'py>(py: Python<'py>, mesh: Option<&Mesh>) -> Option<Boun
 /// A mesh from its bytes.
 pub(crate) fn from_bytes(bytes: Option<&[u8]>) -> PyResult<Option<Mesh>> {
     let wrong = || PyValueError::new_err("the bytes are not those of a mesh");
-    bytes.map(|bytes| Mesh::from_bytes(bytes).ok_or_else(wrong)).transpose()
+    bytes
+        .map(|bytes| Mesh::from_bytes(bytes).ok_or_else(wrong))
+        .transpose()
 }

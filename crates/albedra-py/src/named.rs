@@ -32,15 +32,20 @@ impl Named {
     }
 
     fn __contains__(&self, name: &Bound<'_, PyAny>) -> bool {
-        name.extract::<String>().is_ok_and(|name| self.find(&name).is_some())
+        name.extract::<String>()
+            .is_ok_and(|name| self.find(&name).is_some())
     }
 
     fn __getitem__(&self, py: Python<'_>, name: &Bound<'_, PyAny>) -> PyResult<Py<PyAny>> {
-        let text: String = name.extract().map_err(|_| PyKeyError::new_err(name.clone().unbind()))?;
-        self.find(&text).map(|item| item.clone_ref(py)).ok_or_else(|| {
-            let near = albedra::Near::to(&text, self.names.iter().map(String::as_str));
-            PyKeyError::new_err(format!("no {} is named {text:?}{near}", self.what))
-        })
+        let text: String = name
+            .extract()
+            .map_err(|_| PyKeyError::new_err(name.clone().unbind()))?;
+        self.find(&text)
+            .map(|item| item.clone_ref(py))
+            .ok_or_else(|| {
+                let near = albedra::Near::to(&text, self.names.iter().map(String::as_str));
+                PyKeyError::new_err(format!("no {} is named {text:?}{near}", self.what))
+            })
     }
 
     #[pyo3(signature = (name, default = None))]

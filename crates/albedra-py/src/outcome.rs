@@ -59,7 +59,11 @@ impl Outcome {
     }
 
     fn rows(&self) -> Vec<String> {
-        self.inner.rows().iter().map(|row| row.name.clone()).collect()
+        self.inner
+            .rows()
+            .iter()
+            .map(|row| row.name.clone())
+            .collect()
     }
 }
 
@@ -143,8 +147,13 @@ impl Outcome {
     fn flux<'py>(&'py self, py: Python<'py>) -> PyResult<&'py Bound<'py, Named>> {
         let make = || {
             let fluxes = self.inner.fluxes();
-            let items = fluxes.iter().map(|flux| Ok(Py::new(py, Flux::of(flux))?.into_any()));
-            Py::new(py, Named::of(ROWS, self.rows(), items.collect::<PyResult<_>>()?))
+            let items = fluxes
+                .iter()
+                .map(|flux| Ok(Py::new(py, Flux::of(flux))?.into_any()));
+            Py::new(
+                py,
+                Named::of(ROWS, self.rows(), items.collect::<PyResult<_>>()?),
+            )
         };
         Ok(self.flux.get_or_try_init(py, make)?.bind(py))
     }
@@ -202,7 +211,10 @@ impl Outcome {
 
     /// Lengths of flights that start on a surface.
     #[getter]
-    fn flight_histogram<'py>(&'py self, py: Python<'py>) -> PyResult<&'py Bound<'py, FlightHistogram>> {
+    fn flight_histogram<'py>(
+        &'py self,
+        py: Python<'py>,
+    ) -> PyResult<&'py Bound<'py, FlightHistogram>> {
         let make = || Py::new(py, FlightHistogram::of(py, &self.inner));
         Ok(self.histogram.get_or_try_init(py, make)?.bind(py))
     }
@@ -351,7 +363,10 @@ impl Outcome {
     /// path : path-like
     ///     The file.
     fn save(slf: &Bound<'_, Self>, path: PathBuf) -> PyResult<()> {
-        slf.py().import("albedra._store")?.call_method1("save", (slf, path)).map(drop)
+        slf.py()
+            .import("albedra._store")?
+            .call_method1("save", (slf, path))
+            .map(drop)
     }
 
     /// Reads an outcome from a file that `save` wrote; equal to the saved one, bit for bit.
@@ -361,13 +376,15 @@ impl Outcome {
     /// path : path-like
     ///     The file.
     #[staticmethod]
-    fn load<'py>(py: Python<'py>, path: PathBuf) -> PyResult<Bound<'py, PyAny>> {
+    fn load(py: Python<'_>, path: PathBuf) -> PyResult<Bound<'_, PyAny>> {
         py.import("albedra._store")?.call_method1("load", (path,))
     }
 
     /// All results as an xarray Dataset, with units; the variable of a standard uncertainty ends in `_u`.
     fn to_xarray<'py>(slf: &Bound<'py, Self>) -> PyResult<Bound<'py, PyAny>> {
-        slf.py().import("albedra._xarray")?.call_method1("dataset", (slf,))
+        slf.py()
+            .import("albedra._xarray")?
+            .call_method1("dataset", (slf,))
     }
 
     /// Draws the outcome with matplotlib.
@@ -392,7 +409,9 @@ impl Outcome {
         wall: Option<&str>,
         ax: Option<&Bound<'py, PyAny>>,
     ) -> PyResult<Bound<'py, PyAny>> {
-        slf.py().import("albedra._plot")?.call_method1("plot", (slf, kind, wall, ax))
+        slf.py()
+            .import("albedra._plot")?
+            .call_method1("plot", (slf, kind, wall, ax))
     }
 
     fn _store<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyDict>> {
@@ -406,15 +425,25 @@ impl Outcome {
 
     #[staticmethod]
     #[pyo3(signature = (bytes, target))]
-    fn _rebuild(py: Python<'_>, bytes: &[u8], target: Option<(String, f64, f64)>) -> PyResult<Self> {
-        let outcome = py.detach(|| albedra::Outcome::from_bytes(bytes)).map_err(raise)?;
-        let target = target.map(|(output, relative, reached)| albedra::Target::new(output, relative, reached));
+    fn _rebuild(
+        py: Python<'_>,
+        bytes: &[u8],
+        target: Option<(String, f64, f64)>,
+    ) -> PyResult<Self> {
+        let outcome = py
+            .detach(|| albedra::Outcome::from_bytes(bytes))
+            .map_err(raise)?;
+        let target = target
+            .map(|(output, relative, reached)| albedra::Target::new(output, relative, reached));
         Ok(Self::of(Arc::new(outcome.with_target(target))))
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
         let rebuild = py.get_type::<Self>().getattr("_rebuild")?;
-        let target = self.inner.target().map(|t| (t.output.clone(), t.relative, t.reached));
+        let target = self
+            .inner
+            .target()
+            .map(|t| (t.output.clone(), t.relative, t.reached));
         let bytes = PyBytes::new(py, &self.inner.to_bytes());
         Ok((rebuild, (bytes, target)).into_pyobject(py)?.into_any())
     }

@@ -36,7 +36,8 @@ impl Written for (f64, f64) {
 
 impl<T: Written> Written for Option<T> {
     fn written(&self, py: Python<'_>) -> PyResult<String> {
-        self.as_ref().map_or_else(|| Ok("None".to_owned()), |value| value.written(py))
+        self.as_ref()
+            .map_or_else(|| Ok("None".to_owned()), |value| value.written(py))
     }
 }
 
@@ -77,7 +78,7 @@ macro_rules! record {
             )+
 
             #[staticmethod]
-            #[expect(clippy::too_many_arguments, reason = "one for each field")]
+            #[allow(clippy::too_many_arguments, reason = "one for each field")]
             fn _rebuild($($field: $t),+) -> Self {
                 Self { $($field),+ }
             }

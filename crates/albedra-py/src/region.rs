@@ -91,7 +91,10 @@ impl Region {
     #[staticmethod]
     #[pyo3(signature = (corners, *, at = None))]
     fn polygon(corners: &Bound<'_, PyAny>, at: Option<&Bound<'_, PyAny>>) -> PyResult<Self> {
-        let corners = points("corners", corners)?.into_iter().map(|[u, v]| (u, v)).collect();
+        let corners = points("corners", corners)?
+            .into_iter()
+            .map(|[u, v]| (u, v))
+            .collect();
         Self::checked(albedra::Region::polygon(corners), at)
     }
 
@@ -105,7 +108,8 @@ impl Region {
         let py = name.py();
         let keywords = PyDict::new(py);
         keywords.set_item("at", at)?;
-        py.get_type::<Self>().call_method(name, arguments, Some(&keywords))
+        py.get_type::<Self>()
+            .call_method(name, arguments, Some(&keywords))
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
@@ -113,15 +117,26 @@ impl Region {
         let at = self.0.position().map(|at| (at.x, at.y, at.z));
         let (name, arguments) = match self.0.figure() {
             Figure::Disk { centre, radius } => ("disk", (*centre, *radius).into_pyobject(py)?),
-            Figure::Rectangle { centre, size } => ("rectangle", (*centre, *size).into_pyobject(py)?),
+            Figure::Rectangle { centre, size } => {
+                ("rectangle", (*centre, *size).into_pyobject(py)?)
+            }
             Figure::Polygon { corners } => ("polygon", (corners.clone(),).into_pyobject(py)?),
-            _ => return Err(pyo3::exceptions::PyNotImplementedError::new_err("an unknown region")),
+            _ => {
+                return Err(pyo3::exceptions::PyNotImplementedError::new_err(
+                    "an unknown region",
+                ));
+            }
         };
-        Ok((rebuild, (name, arguments, at)).into_pyobject(py)?.into_any())
+        Ok((rebuild, (name, arguments, at))
+            .into_pyobject(py)?
+            .into_any())
     }
 
     fn __repr__(&self) -> String {
-        let at = self.0.position().map_or_else(String::new, |at| format!(", at={}", text::vector(at)));
+        let at = self
+            .0
+            .position()
+            .map_or_else(String::new, |at| format!(", at={}", text::vector(at)));
         let pair = |(u, v): (f64, f64)| tuple(&[u, v]);
         match self.0.figure() {
             Figure::Disk { centre, radius } => fitting(
@@ -134,10 +149,9 @@ impl Region {
             ),
             Figure::Polygon { corners } => {
                 let all: Vec<String> = corners.iter().map(|&corner| pair(corner)).collect();
-                fitting(
-                    format!("Region.polygon([{}]{at})", all.join(", ")),
-                    || format!("<Region: polygon of {} corners>", corners.len()),
-                )
+                fitting(format!("Region.polygon([{}]{at})", all.join(", ")), || {
+                    format!("<Region: polygon of {} corners>", corners.len())
+                })
             }
             _ => "<Region>".to_owned(),
         }

@@ -65,9 +65,10 @@ impl Source {
         let source = &self.0;
         let (name, data) = match source.place() {
             SourcePlace::Point { position } => ("point", vec![Argument::Vector(*position)]),
-            SourcePlace::Disk { centre, axis, .. } => {
-                ("beam", vec![Argument::Vector(*centre), Argument::Vector(*axis)])
-            }
+            SourcePlace::Disk { centre, axis, .. } => (
+                "beam",
+                vec![Argument::Vector(*centre), Argument::Vector(*axis)],
+            ),
             SourcePlace::Wall { name } => ("wall", vec![Argument::Text(name.clone())]),
             SourcePlace::Walls => ("walls", Vec::new()),
             _ => ("volume", Vec::new()),
@@ -82,7 +83,13 @@ impl Source {
             (Spread::Cosine { half_angle, .. }, "beam") if half_angle != 0.0 => {
                 options.push(("divergence", Argument::Number(half_angle)));
             }
-            (Spread::Cosine { axis: Some(axis), .. }, "point") | (Spread::Parallel { axis }, _) => {
+            (
+                Spread::Cosine {
+                    axis: Some(axis), ..
+                },
+                "point",
+            )
+            | (Spread::Parallel { axis }, _) => {
                 options.push(("axis", Argument::Vector(axis)));
             }
             (Spread::Cosine { half_angle, .. }, "wall" | "walls") if half_angle != HEMISPHERE => {
@@ -93,7 +100,11 @@ impl Source {
         if source.watts() != 1.0 {
             options.push(("flux", Argument::Number(source.watts())));
         }
-        Call { name, data, options }
+        Call {
+            name,
+            data,
+            options,
+        }
     }
 
     fn from_walls(
@@ -168,7 +179,9 @@ impl Source {
     ) -> PyResult<Self> {
         let position = vector::<3>("position", position)?;
         let source = albedra::Source::beam(position, vector::<3>("direction", direction)?);
-        Ok(Self(source.radius(radius).divergence(divergence).flux(flux)))
+        Ok(Self(
+            source.radius(radius).divergence(divergence).flux(flux),
+        ))
     }
 
     /// Light from a wall, a region or an opening, uniform over its visible area and Lambertian.
@@ -234,12 +247,18 @@ impl Source {
         data: &Bound<'py, PyTuple>,
         options: &Bound<'py, PyDict>,
     ) -> PyResult<Bound<'py, PyAny>> {
-        name.py().get_type::<Self>().call_method(name, data, Some(options))
+        name.py()
+            .get_type::<Self>()
+            .call_method(name, data, Some(options))
     }
 
     fn __reduce__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
         let call = self.call();
-        let data: Vec<_> = call.data.iter().map(|a| a.to_python(py)).collect::<PyResult<_>>()?;
+        let data: Vec<_> = call
+            .data
+            .iter()
+            .map(|a| a.to_python(py))
+            .collect::<PyResult<_>>()?;
         let options = PyDict::new(py);
         for (name, value) in &call.options {
             options.set_item(name, value.to_python(py)?)?;

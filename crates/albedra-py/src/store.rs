@@ -11,7 +11,10 @@ use crate::errors::raise;
 use crate::mesh;
 
 /// All parts of an outcome; sums are split into their high and low 64 bits, (output, group).
-pub(crate) fn parts<'py>(py: Python<'py>, outcome: &albedra::Outcome) -> PyResult<Bound<'py, PyDict>> {
+pub(crate) fn parts<'py>(
+    py: Python<'py>,
+    outcome: &albedra::Outcome,
+) -> PyResult<Bound<'py, PyDict>> {
     let parts = PyDict::new(py);
     let (experiment, totals) = (outcome.experiment(), outcome.totals());
     parts.set_item("experiment", experiment.to_text())?;
@@ -24,7 +27,9 @@ pub(crate) fn parts<'py>(py: Python<'py>, outcome: &albedra::Outcome) -> PyResul
     parts.set_item("photons", ranges)?;
     let c = totals.counters();
     parts.set_item("counters", (c.strikes, c.flights, c.retried, c.untracked))?;
-    let target = outcome.target().map(|t| (t.output.clone(), t.relative, t.reached));
+    let target = outcome
+        .target()
+        .map(|t| (t.output.clone(), t.relative, t.reached));
     parts.set_item("target", target)?;
     let shape = (totals.groups().len(), GROUPS);
     let sums = || totals.groups().iter().flatten();
@@ -39,16 +44,25 @@ pub(crate) fn parts<'py>(py: Python<'py>, outcome: &albedra::Outcome) -> PyResul
 /// The outcome of which these are the parts.
 pub(crate) fn outcome(parts: &Bound<'_, PyDict>) -> PyResult<albedra::Outcome> {
     let part = |name: &str| {
-        parts.get_item(name)?.ok_or_else(|| PyKeyError::new_err(format!("{name} is missing")))
+        parts
+            .get_item(name)?
+            .ok_or_else(|| PyKeyError::new_err(format!("{name} is missing")))
     };
     let fingerprint = |name: &str| -> PyResult<Fingerprint> {
         let text: String = part(name)?.extract()?;
-        text.parse().map_err(|error| PyValueError::new_err(format!("{name}: {error}")))
+        text.parse()
+            .map_err(|error| PyValueError::new_err(format!("{name}: {error}")))
     };
     let ranges: Vec<(u64, u64)> = part("photons")?.extract()?;
-    let photons = Intervals::try_from(ranges).map_err(|error| PyValueError::new_err(error.to_string()))?;
+    let photons =
+        Intervals::try_from(ranges).map_err(|error| PyValueError::new_err(error.to_string()))?;
     let (strikes, flights, retried, untracked) = part("counters")?.extract()?;
-    let counters = Counters { strikes, flights, retried, untracked };
+    let counters = Counters {
+        strikes,
+        flights,
+        retried,
+        untracked,
+    };
     let totals = Totals::from_parts(
         fingerprint("history")?,
         fingerprint("outputs")?,
@@ -68,7 +82,8 @@ pub(crate) fn outcome(parts: &Bound<'_, PyDict>) -> PyResult<albedra::Outcome> {
     let experiment =
         albedra::Experiment::from_text(&text, mesh::from_bytes(mesh.as_deref())?).map_err(raise)?;
     let target: Option<(String, f64, f64)> = part("target")?.extract()?;
-    let target = target.map(|(output, relative, reached)| albedra::Target::new(output, relative, reached));
+    let target =
+        target.map(|(output, relative, reached)| albedra::Target::new(output, relative, reached));
     let outcome = albedra::Outcome::from_parts(&experiment, totals).map_err(raise)?;
     Ok(outcome.with_target(target))
 }
@@ -83,7 +98,12 @@ fn sums(high: &Bound<'_, PyAny>, low: &Bound<'_, PyAny>) -> PyResult<Vec<[i128; 
         )));
     }
     let whole = |(&high, &low): (&i64, &u64)| (i128::from(high) << 64) | i128::from(low);
-    let all: Vec<i128> = high.as_slice()?.iter().zip(low.as_slice()?).map(whole).collect();
+    let all: Vec<i128> = high
+        .as_slice()?
+        .iter()
+        .zip(low.as_slice()?)
+        .map(whole)
+        .collect();
     let (rows, _) = all.as_chunks::<GROUPS>();
     Ok(rows.to_vec())
 }

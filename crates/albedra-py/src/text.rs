@@ -54,6 +54,9 @@ pub(crate) fn short(x: f64) -> String {
     if !(1e-3..1e4).contains(&magnitude) {
         return format!("{x:.3e}");
     }
-    let decimals = [1e3, 1e2, 1e1, 1.0, 1e-1, 1e-2].iter().take_while(|&&least| magnitude < least).count();
+    let decimals = [1e3, 1e2, 1e1, 1.0, 1e-1, 1e-2]
+        .iter()
+        .take_while(|&&least| magnitude < least)
+        .count();
     format!("{x:.decimals$}")
 }

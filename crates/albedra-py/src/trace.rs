@@ -30,12 +30,17 @@ impl Order {
         if let Some(seed) = self.seed
             && seed != before.seed()
         {
-            let text = format!("seed must be that of the outcome to continue, {}, got {seed}", before.seed());
+            let text = format!(
+                "seed must be that of the outcome to continue, {}, got {seed}",
+                before.seed()
+            );
             return Err(PyValueError::new_err(text));
         }
         match self.first {
             Some(first) => {
-                let text = format!("first follows from the outcome to continue and must be left out, got {first}");
+                let text = format!(
+                    "first follows from the outcome to continue and must be left out, got {first}"
+                );
                 Err(PyValueError::new_err(text))
             }
             None => Ok(()),
@@ -99,7 +104,9 @@ pub(crate) fn trace(
             let end = Progress::ended(outcome.photons() - before, last.as_ref());
             teller.call1(py, (end,))?;
         }
-        module.call_method1("close", (&teller, done.is_some())).map(drop)
+        module
+            .call_method1("close", (&teller, done.is_some()))
+            .map(drop)
     };
     match result {
         Ok(outcome) => {
@@ -120,11 +127,16 @@ pub(crate) fn trace(
 /// Ctrl-C becomes `Interrupted` with what there is; any other exception comes out unchanged.
 fn stopped(py: Python<'_>, raised: Option<PyErr>, partial: Option<Box<albedra::Outcome>>) -> PyErr {
     let cause = match raised {
-        Some(error) if !error.get_type(py).is(py.get_type::<PyKeyboardInterrupt>()) => return error,
+        Some(error) if !error.get_type(py).is(py.get_type::<PyKeyboardInterrupt>()) => {
+            return error;
+        }
         cause => cause,
     };
     let text = match &partial {
-        Some(outcome) => format!("stopped after {} photons, which are in result", outcome.photons()),
+        Some(outcome) => format!(
+            "stopped after {} photons, which are in result",
+            outcome.photons()
+        ),
         None => "stopped before any photons were finished; result is None".to_owned(),
     };
     let error = Interrupted::new_err(text);
