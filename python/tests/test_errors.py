@@ -153,6 +153,8 @@ def test_wrong_names_of_outputs_are_named(outcome):
         outcome.ratio("sample.incident", "nothing")
     with pytest.raises(ValueError, match=r"power must lie in \[1, 4\], got 5"):
         outcome.flight_moment(5)
+    with pytest.raises(ValueError, match=r"power must lie in \[1, 4\], got 0"):
+        outcome.first_flight_moment(0)
     with pytest.raises(ValueError, match="stop must be above start"):
         outcome.decay.decay_time(2e-8, 1e-8)
 

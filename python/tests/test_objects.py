@@ -99,7 +99,7 @@ def test_every_representation_fits_80_columns(outcome):
     for thing in [thing for _, thing in everything(outcome)] + long:
         if not isinstance(thing, al.CoverageInterval):
             assert len(repr(thing)) <= 80, repr(thing)
-    assert max(len(line) for line in str(outcome).splitlines()) <= 92
+    assert max(len(line) for line in str(outcome).splitlines()) <= 80
 
 
 @pytest.mark.parametrize("thing", REBUILT, ids=repr)

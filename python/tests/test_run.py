@@ -180,6 +180,10 @@ def test_numbers_agree_with_each_other(outcome):
     same = outcome.estimate(lambda get: get["detector.incident"] / get["sample.incident"])
     assert (same.value, same.u) == (ratio.value, ratio.u)
     assert set(outcome.outputs) >= {"mean_free_path", "ledger.roulette", "sample.direct"}
+    assert outcome.flight_moment(1) == outcome.mean_free_path
+    assert outcome.flight_moment(3).unit == "m³"
+    # All photons start at the lamp, less than the chamber's diagonal away from every wall.
+    assert 0.25 < outcome.first_flight_moment(1).value < 1.53
     assert outcome.switch_on.energy[-1] + outcome.switch_off.energy[-1] == pytest.approx(
         outcome.stored_energy.value, rel=1e-9
     )

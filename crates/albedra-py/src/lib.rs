@@ -18,11 +18,14 @@ mod errors;
 mod estimate;
 mod experiment;
 mod grid;
+mod histogram;
 mod ledger;
+mod map;
 mod medium;
 mod mesh;
 mod named;
 mod outcome;
+mod outputs;
 mod records;
 mod region;
 mod source;
@@ -39,7 +42,7 @@ mod _albedra {
     #[pymodule_export]
     use crate::coating::Coating;
     #[pymodule_export]
-    use crate::curves::{Curve, Decay, DecayTime, FlightHistogram, Map};
+    use crate::curves::{Curve, Decay, DecayTime};
     #[pymodule_export]
     use crate::enclosure::Enclosure;
     #[pymodule_export]
@@ -51,7 +54,11 @@ mod _albedra {
     #[pymodule_export]
     use crate::grid::TimeGrid;
     #[pymodule_export]
+    use crate::histogram::FlightHistogram;
+    #[pymodule_export]
     use crate::ledger::{Counters, Facts, Flux, Ledger, Progress, Target};
+    #[pymodule_export]
+    use crate::map::Map;
     #[pymodule_export]
     use crate::medium::Medium;
     #[pymodule_export]

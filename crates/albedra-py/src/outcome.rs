@@ -1,20 +1,21 @@
 //! What a run found.
 
-use std::cell::RefCell;
 use std::path::PathBuf;
 use std::sync::Arc;
 
-use pyo3::exceptions::PyValueError;
 use pyo3::prelude::*;
 use pyo3::sync::PyOnceLock;
 use pyo3::types::{PyBytes, PyDict, PyTuple};
 
-use crate::curves::{Curve, Decay, FlightHistogram, Map};
+use crate::curves::{Curve, Decay};
 use crate::errors::raise;
 use crate::estimate::Estimate;
 use crate::experiment::Experiment;
+use crate::histogram::FlightHistogram;
 use crate::ledger::{Counters, Facts, Flux, Ledger, Target};
+use crate::map::Map;
 use crate::named::{MAPS, Named, ROWS};
+use crate::outputs::{self, unit, unit_of_power, unit_of_ratio};
 use crate::wall::Names;
 
 /// What a run found: estimates, curves and maps, each with the standard uncertainty of the simulation.
@@ -64,17 +65,6 @@ impl Outcome {
             .iter()
             .map(|row| row.name.clone())
             .collect()
-    }
-}
-
-/// Unit of an output, by its name.
-fn unit(output: &str) -> &'static str {
-    match output {
-        "mean_free_path" | "mean_path" => "m",
-        "mean_strikes" => "",
-        "stored_energy" => "J",
-        _ if output.ends_with(".irradiance") => "W/m²",
-        _ => "W",
     }
 }
 
@@ -250,17 +240,19 @@ impl Outcome {
     /// power : int
     ///     The power k, from 1 to 4; the result is in mᵏ.
     fn flight_moment(&self, power: usize) -> PyResult<Estimate> {
-        let unit = match power {
-            1 => "m",
-            2 => "m²",
-            3 => "m³",
-            4 => "m⁴",
-            _ => {
-                let text = format!("power must lie in [1, 4], got {power}");
-                return Err(PyValueError::new_err(text));
-            }
-        };
+        let unit = unit_of_power(power)?;
         Ok(Estimate::of(self.inner.flight_moment(power), unit))
+    }
+
+    /// The same of first flights that start inside, as from a point, a beam or the volume; NaN if there are none.
+    ///
+    /// Parameters
+    /// ----------
+    /// power : int
+    ///     The power k, from 1 to 4; the result is in mᵏ.
+    fn first_flight_moment(&self, power: usize) -> PyResult<Estimate> {
+        let unit = unit_of_power(power)?;
+        Ok(Estimate::of(self.inner.first_flight_moment(power), unit))
     }
 
     /// Names of all outputs that are single numbers.
@@ -288,12 +280,7 @@ impl Outcome {
     ///     Names of the outputs; see `outputs`.
     fn ratio(&self, above: &str, below: &str) -> PyResult<Estimate> {
         let estimate = self.inner.ratio(above, below).map_err(raise)?;
-        let unit = match (unit(above), unit(below)) {
-            (a, b) if a == b => String::new(),
-            (a, "") => a.to_owned(),
-            ("", b) => format!("1/({b})"),
-            (a, b) => format!("{a}/({b})"),
-        };
+        let unit = unit_of_ratio(above, below);
         Ok(Estimate::of(estimate, &unit))
     }
 
@@ -310,28 +297,7 @@ impl Outcome {
     /// Estimate
     ///     Of the unit that the function gives.
     fn estimate(&self, py: Python<'_>, function: &Bound<'_, PyAny>) -> PyResult<Estimate> {
-        let names = self.inner.output_names();
-        let raised = RefCell::new(None);
-        let call = |get: &dyn Fn(&str) -> f64| {
-            let outputs = PyDict::new(py);
-            for name in &names {
-                outputs.set_item(name, get(name))?;
-            }
-            function.call1((outputs,))?.extract::<f64>()
-        };
-        let estimate = self.inner.estimate(|get| {
-            if raised.borrow().is_some() {
-                return f64::NAN;
-            }
-            call(get).unwrap_or_else(|error| {
-                *raised.borrow_mut() = Some(error);
-                f64::NAN
-            })
-        });
-        match raised.into_inner() {
-            Some(error) => Err(error),
-            None => Ok(Estimate::of(estimate.map_err(raise)?, "")),
-        }
+        outputs::estimate(py, &self.inner, function)
     }
 
     /// Puts this outcome and one of other photons of the same experiment and seed together.
