@@ -4,8 +4,9 @@ import inspect
 import re
 from pathlib import Path
 
-import albedra as al
 import pytest
+
+import albedra as al
 
 PAGE = (Path(__file__).parents[2] / "docs" / "names.md").read_text(encoding="utf-8")
 CELLS = re.findall(r"^\| `[^`]+` \| `([^`]+)` \|$", PAGE, re.MULTILINE)

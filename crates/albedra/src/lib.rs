@@ -24,18 +24,19 @@ pub use estimate::{
     GROUPS, Intervals, IntervalsError, Jackknife, MergeError, Sums, Totals, WithUnit,
 };
 pub use experiment::{
-    Experiment, ExperimentError, Facts, Row, RunError, TextError, TimeGrid, TimeGridError, Trace,
+    Experiment, ExperimentError, Facts, MapRequest, Row, RunError, Settings, TextError, TimeGrid,
+    TimeGridError, Trace,
 };
 pub use geometry::{
-    Audit, Frame, ImportError, Mesh, MeshFormat, OutlineError, Place, Problem, Region, RegionError,
-    SolidError, Unit, UnitError,
+    Audit, Figure, Frame, ImportError, Mesh, MeshFormat, OutlineError, Place, Problem, Region,
+    RegionError, SolidError, Unit, UnitError,
 };
 pub use medium::{Medium, MediumError, SPEED_OF_LIGHT};
 pub use near::Near;
 pub use outcome::{
     Curve, Decay, DecayTime, FlightHistogram, Flux, Ledger, LoadError, Map, Outcome, Target,
 };
-pub use source::Source;
+pub use source::{Place as SourcePlace, Source, Spread};
 
 /// The README's example is a test too.
 #[cfg(doctest)]

@@ -11,7 +11,7 @@ const MOST: usize = 8;
 
 impl Near {
     /// Ranks the names by their likeness to the wrong one.
-    pub(crate) fn to<'a>(wrong: &str, names: impl Iterator<Item = &'a str>) -> Self {
+    pub fn to<'a>(wrong: &str, names: impl Iterator<Item = &'a str>) -> Self {
         let mut ranked: Vec<(usize, &str)> =
             names.map(|name| (distance(wrong, name), name)).collect();
         ranked.sort_by_key(|&(distance, _)| distance);

@@ -36,7 +36,7 @@ struct RegionForm {
 
 impl Enclosure {
     /// The mesh, if the shape was given by one; it must be kept beside the text.
-    pub(crate) fn mesh_beside(&self) -> Option<&Mesh> {
+    pub fn mesh_beside(&self) -> Option<&Mesh> {
         (self.solid.form == ShapeForm::Mesh).then_some(&self.solid.mesh)
     }
 

@@ -4,7 +4,10 @@ use std::fmt;
 
 use serde::{Deserialize, Serialize};
 
-use super::{Estimate, Estimates, Fingerprint, Intervals, IntervalsError, Jackknife, Sums};
+use super::{
+    Estimate, Estimates, Fingerprint, FingerprintBuilder, Intervals, IntervalsError, Jackknife,
+    Sums,
+};
 
 /// Number of groups that photons are dealt to; photon `i` belongs to group `i` mod 64.
 ///
@@ -80,6 +83,44 @@ impl Totals {
             groups,
             counters: Counters::default(),
         }
+    }
+
+    /// Puts totals together from their parts, as kept in a file of another form than [`Totals::to_bytes`].
+    ///
+    /// Compare their [`Totals::checksum`] with the one that was kept.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Counters, Fingerprint, Intervals, Totals};
+    ///
+    /// let (history, outputs) = (Fingerprint([1; 16]), Fingerprint([2; 16]));
+    /// let totals = Totals::from_parts(history, outputs, 7, Intervals::default(), vec![[0; 64]; 3], Counters::default());
+    /// assert_eq!(totals, Totals::empty(history, outputs, 7, 3));
+    /// ```
+    pub fn from_parts(
+        history: Fingerprint,
+        outputs: Fingerprint,
+        seed: u64,
+        photons: Intervals,
+        groups: Vec<[i128; GROUPS]>,
+        counters: Counters,
+    ) -> Self {
+        Self {
+            history,
+            outputs,
+            seed,
+            photons,
+            groups,
+            counters,
+        }
+    }
+
+    /// Fingerprint of everything in the totals, which tells damaged ones.
+    pub fn checksum(&self) -> Fingerprint {
+        FingerprintBuilder::new("totals checksum")
+            .bytes(&self.to_bytes())
+            .finish()
     }
 
     /// Fingerprint of all that decides what photons do.

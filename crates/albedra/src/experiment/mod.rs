@@ -52,26 +52,34 @@ pub struct Experiment {
 /// All of an experiment but its enclosure.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
-pub(crate) struct Settings {
+#[non_exhaustive]
+pub struct Settings {
+    /// Printed with an outcome; has no influence on it.
     #[serde(default, skip_serializing_if = "String::is_empty")]
-    pub(crate) title: String,
+    pub title: String,
+    /// Path in metres after which photons end.
     #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub(crate) path_limit: Option<f64>,
-    pub(crate) memory: u64,
+    pub path_limit: Option<f64>,
+    /// Memory in bytes that outputs may take.
+    pub memory: u64,
+    /// The time grid, if one was set.
     #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub(crate) time: Option<TimeGrid>,
-    pub(crate) sources: Vec<Source>,
+    pub time: Option<TimeGrid>,
+    /// The sources.
+    pub sources: Vec<Source>,
+    /// The maps that were asked for.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
-    pub(crate) maps: Vec<MapRequest>,
+    pub maps: Vec<MapRequest>,
 }
 
 /// A map that was asked for.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
-pub(crate) struct MapRequest {
-    pub(crate) wall: String,
+pub struct MapRequest {
+    /// The wall.
+    pub wall: String,
     /// Cells along u and v.
-    pub(crate) cells: [usize; 2],
+    pub cells: [usize; 2],
 }
 
 /// Memory that outputs may take unless told otherwise: 1 GiB.
@@ -142,6 +150,11 @@ impl Experiment {
     /// The enclosure.
     pub fn enclosure(&self) -> &Enclosure {
         &self.enclosure
+    }
+
+    /// Title, sources, time grid, maps and limits.
+    pub fn settings(&self) -> &Settings {
+        &self.settings
     }
 
     /// The sources.

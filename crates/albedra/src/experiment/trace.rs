@@ -144,6 +144,12 @@ impl<'a> Trace<'a> {
                 photons: self.photons,
             });
         }
+        if let Some(before) = self.before {
+            // Before the work is done, not after.
+            let (plan, theirs) = (&compiled.plan, before.totals());
+            let mut empty = Totals::empty(plan.history, plan.totals, theirs.seed(), plan.outputs());
+            empty.merge(theirs).map_err(RunError::Merge)?;
+        }
         let threads = self
             .threads
             .unwrap_or_else(|| available_parallelism().map_or(1, usize::from));

@@ -27,7 +27,7 @@ pub use frame::Frame;
 pub use import::{ImportError, MeshFormat, Place, Unit, UnitError};
 pub use mesh::Mesh;
 pub use outline_check::OutlineError;
-pub use region::{Region, RegionError};
+pub use region::{Figure, Region, RegionError};
 pub(crate) use region_shape::RegionShape;
 pub use solids::SolidError;
 pub(crate) use solids::{cuboid, extruded, prism};

@@ -36,12 +36,30 @@ pub struct Region {
     at: Option<DVec3>,
 }
 
+/// The outline of a region; all lengths are in metres.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(rename_all = "snake_case", deny_unknown_fields)]
-enum Figure {
-    Disk { centre: Point, radius: f64 },
-    Rectangle { centre: Point, size: (f64, f64) },
-    Polygon { corners: Vec<Point> },
+#[non_exhaustive]
+pub enum Figure {
+    /// A disk.
+    Disk {
+        /// Its centre (u, v).
+        centre: (f64, f64),
+        /// Its radius.
+        radius: f64,
+    },
+    /// A rectangle along the wall's axes.
+    Rectangle {
+        /// Its centre (u, v).
+        centre: (f64, f64),
+        /// Its width along u and its height along v.
+        size: (f64, f64),
+    },
+    /// A simple polygon.
+    Polygon {
+        /// Its corners (u, v).
+        corners: Vec<(f64, f64)>,
+    },
 }
 
 /// Reason why a region cannot be used. Lengths are in metres.
@@ -148,6 +166,16 @@ impl Region {
     pub fn at(mut self, position: DVec3) -> Self {
         self.at = Some(position);
         self
+    }
+
+    /// The outline.
+    pub fn figure(&self) -> &Figure {
+        &self.figure
+    }
+
+    /// The position in metres that was chosen with [`at`](Self::at), if one was.
+    pub fn position(&self) -> Option<DVec3> {
+        self.at
     }
 
     /// Checks what can be checked without the wall.

@@ -48,6 +48,16 @@ pub struct Target {
 }
 
 impl Target {
+    /// A target for an output: relative standard uncertainty wanted and reached.
+    pub fn new(output: impl Into<String>, relative: f64, reached: f64) -> Self {
+        let output = output.into();
+        Self {
+            output,
+            relative,
+            reached,
+        }
+    }
+
     /// Whether the target was met.
     pub fn met(&self) -> bool {
         self.reached <= self.relative
@@ -62,6 +72,13 @@ impl Outcome {
             totals,
             target: None,
         }
+    }
+
+    /// The same outcome with the target that its run had, as when it is read from a file.
+    #[must_use]
+    pub fn with_target(mut self, target: Option<Target>) -> Self {
+        self.target = target;
+        self
     }
 
     pub(crate) fn set_target(&mut self, target: Target) {

@@ -34,33 +34,50 @@ pub struct Source {
 /// Where photons start.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(rename_all = "snake_case", deny_unknown_fields)]
-pub(crate) enum Place {
+#[non_exhaustive]
+pub enum Place {
+    /// A point.
     Point {
+        /// Position in metres.
         position: DVec3,
     },
+    /// A disk across a beam.
     Disk {
+        /// Its centre in metres.
         centre: DVec3,
+        /// Direction of the beam, of any length.
         axis: DVec3,
+        /// Its radius in metres.
         radius: f64,
     },
+    /// A wall, a region or an opening.
     Wall {
+        /// Its name.
         name: String,
     },
+    /// All walls, regions and openings by area.
     Walls,
+    /// The volume.
     Volume,
 }
 
-/// In which directions they start.
+/// In which directions photons start.
 #[derive(Clone, Copy, Debug, PartialEq, Serialize, Deserialize)]
 #[serde(rename_all = "snake_case", deny_unknown_fields)]
-pub(crate) enum Spread {
+#[non_exhaustive]
+pub enum Spread {
+    /// In all directions alike.
     Isotropic,
     /// By the cosine law about an axis, or about the wall's normal; up to a half-angle in radians.
     Cosine {
+        /// The axis, of any length; the wall's normal if there is none.
         axis: Option<DVec3>,
+        /// The half-angle in radians.
         half_angle: f64,
     },
+    /// All in one direction.
     Parallel {
+        /// The direction, of any length.
         axis: DVec3,
     },
 }
@@ -185,6 +202,16 @@ impl Source {
             axis: direction.into(),
         };
         self
+    }
+
+    /// Where its photons start.
+    pub fn place(&self) -> &Place {
+        &self.place
+    }
+
+    /// In which directions its photons start.
+    pub fn spread(&self) -> Spread {
+        self.spread
     }
 
     /// Radiant flux in watts.
