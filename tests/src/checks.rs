@@ -82,6 +82,14 @@ impl Checks {
         self.compare(&record.id, measured.into(), record.value, record.tolerance);
     }
 
+    /// Compares with a reference record from which the measured quantity may differ by `relative` by its definition, as
+    /// the mean over a cell does from the value at its centre. This counts as the standard uncertainty.
+    pub fn near_record(&mut self, record: &Record, measured: impl Into<Measured>, relative: f64) {
+        self.compared.insert(record.id.clone());
+        let tolerance = record.tolerance.hypot(relative * record.value);
+        self.compare(&record.id, measured.into(), record.value, tolerance);
+    }
+
     /// Compares with a reference from a closed form, known exactly.
     pub fn exact(&mut self, id: &str, measured: impl Into<Measured>, reference: f64) {
         self.compare(id, measured.into(), reference, 0.0);
