@@ -16,12 +16,6 @@ impl Facets {
     pub(crate) fn new(hierarchy: Hierarchy, planes: Vec<[f64; 4]>) -> Self {
         Self { hierarchy, planes }
     }
-
-    /// The nearest triangle of a point, and the point put on its plane.
-    fn nearest(&self, point: [f64; 3]) -> (u32, [f64; 3]) {
-        let (_, triangle) = self.hierarchy.nearest_triangle(point);
-        (triangle, onto(point, self.planes[triangle as usize]))
-    }
 }
 
 /// A point put back onto a plane, so that rounding does not add up over strikes.
@@ -76,11 +70,16 @@ impl Stage for Next<'_> {
             };
             let mut hit = facets.hierarchy.next(origin, direction, standing);
             if hit.is_none() {
-                // Rounding has put the photon a little outside: once more from the nearest surface.
                 retries.retried += 1;
-                let (triangle, on_it) = facets.nearest(origin);
-                origin = on_it;
-                hit = facets.hierarchy.next(origin, direction, triangle);
+                hit = facets.hierarchy.overtaken(origin, direction, standing);
+            }
+            if hit.is_none() {
+                // The photon is a little outside: once more from the nearest surface, or out through what it stands on.
+                let hierarchy = &facets.hierarchy;
+                let triangle;
+                (triangle, origin) = hierarchy.nearest_point(origin);
+                hit = hierarchy.next(origin, direction, triangle);
+                hit = hit.or_else(|| hierarchy.overtaken(origin, direction, standing));
             }
             let Some(hit) = hit else {
                 block.missed.push(lane as u16);
