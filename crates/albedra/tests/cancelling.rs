@@ -47,10 +47,8 @@ fn what_was_done_equals_a_straight_run_of_its_photons() {
     for threads in [1, 3] {
         let partial = stopped_after(&experiment, None, threads, 100_000);
         let photons = partial.photons();
-        assert_eq!(
-            partial.totals().photons().iter().collect::<Vec<_>>(),
-            [0..photons]
-        );
+        let ranges: Vec<_> = partial.totals().photons().iter().collect();
+        assert!(ranges.len() == 1 && ranges[0] == (0..photons), "{ranges:?}");
         let whole = experiment.trace(photons).seed(3).run().unwrap();
         assert_eq!(partial, whole);
         assert!(partial.ledger().closes());

@@ -181,7 +181,10 @@ fn near(a: f64, b: f64, slack: f64) {
 fn books_balance(case: &Case, outcome: &Outcome) {
     let ledger = outcome.ledger();
     assert!(ledger.closes(), "open by {} quanta", ledger.open_quanta);
-    assert_eq!(outcome.counters().untracked, 0);
+    let counters = outcome.counters();
+    assert_eq!(counters.untracked, 0);
+    assert_eq!(counters.flights, counters.strikes);
+    assert!(counters.strikes >= outcome.photons());
     assert_eq!(ledger.untracked.value, 0.0);
     let rows = outcome.rows();
     let emitted = ONE * i128::from(outcome.photons());

@@ -1,4 +1,8 @@
 //! No photon is lost, in bodies of any proportions, size and place.
+#![expect(
+    clippy::disallowed_methods,
+    reason = "the last digits of a body are of no concern"
+)]
 
 use albedra::{Coating, Enclosure, Experiment, Mesh, Outcome, Source};
 use glam::DVec3;

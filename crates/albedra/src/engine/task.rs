@@ -57,13 +57,14 @@ impl Task {
                 return None;
             }
             plan.flight.next(level, block, &mut retries);
+            counters.flights += block.live as u64;
+            counters.strikes += (block.live - block.missed.len()) as u64;
             give_up_missed(block, &mut counters);
             plan.passage.pass(level, block);
             plan.surfaces.strike(level, block);
             for (range, observable) in &plan.observables {
                 observable.strike(level, block, &mut cells[range.clone()]);
             }
-            counters.strikes += block.live as u64;
             turn(level, &plan.surfaces, plan.mirrors, block);
             plan.retirement.retire(level, block, &mut ended);
             crew.fill(block, &ended);

@@ -18,15 +18,17 @@ impl Facets {
     }
 
     /// Another try for a photon that found no wall, since rounding has put it a little outside: through the triangle
-    /// that it has slipped through already, else from the nearest one.
+    /// that it has slipped through already, else from the nearest point of the mesh, or out through what it stands on.
     #[cold]
     fn retry(&self, origin: &mut [f64; 3], direction: [f64; 3], standing: u32) -> Option<Hit> {
-        if let Some(hit) = self.hierarchy.overtaken(*origin, direction, standing) {
-            return Some(hit);
-        }
-        let (_, nearest) = self.hierarchy.nearest_triangle(*origin);
-        *origin = onto(*origin, *self.planes.get(nearest as usize)?);
-        self.hierarchy.next(*origin, direction, nearest)
+        let overtaken = self.hierarchy.overtaken(*origin, direction, standing);
+        overtaken.or_else(|| {
+            let nearest;
+            (nearest, *origin) = self.hierarchy.nearest_point(*origin);
+            self.hierarchy
+                .next(*origin, direction, nearest)
+                .or_else(|| self.hierarchy.overtaken(*origin, direction, standing))
+        })
     }
 }
 

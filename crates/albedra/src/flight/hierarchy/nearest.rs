@@ -9,7 +9,20 @@ impl Hierarchy {
     ///
     /// Without triangles the distance is infinite.
     pub(crate) fn nearest_triangle(&self, point: [f64; 3]) -> (f64, u32) {
-        self.nearest_of(point, |_, _| true)
+        let (distance, triangle, _) = self.nearest_of(point, |_, _| true);
+        (distance, triangle)
+    }
+
+    /// Finds the nearest triangle to a point, as [`Self::nearest_triangle`], and its point nearest to that, in metres.
+    ///
+    /// Without triangles the point stays where it is.
+    pub(crate) fn nearest_point(&self, point: [f64; 3]) -> (u32, [f64; 3]) {
+        let (distance, triangle, corners) = self.nearest_of(point, |_, _| true);
+        if !distance.is_finite() {
+            return (triangle, point);
+        }
+        let foot = foot_on(point, &corners);
+        (triangle, [0, 1, 2].map(|axis| point[axis] + foot[axis]))
     }
 
     /// Finds the triangle through which a ray without a strike has slipped, as a strike at zero.
@@ -24,20 +37,21 @@ impl Hierarchy {
         direction: [f64; 3],
         standing: u32,
     ) -> Option<Hit> {
-        let (distance, triangle) = self.nearest_of(origin, |facet, [a, b, c]| {
+        let (distance, triangle, _) = self.nearest_of(origin, |facet, [a, b, c]| {
             facet.triangle != standing && dot(cross(minus(*b, *a), minus(*c, *a)), direction) > 0.0
         });
         (distance <= self.behind).then_some(Hit { t: 0.0, triangle })
     }
 
-    /// Finds the nearest of the triangles that are accepted.
+    /// Finds the nearest of the triangles that are accepted: its distance, its index and its corners.
     fn nearest_of(
         &self,
         point: [f64; 3],
         accept: impl Fn(&Facet, &[[f64; 3]; 3]) -> bool,
-    ) -> (f64, u32) {
+    ) -> (f64, u32, [[f64; 3]; 3]) {
         let inside = [0, 1, 2].map(|axis| self.frame.inside(point, axis));
         let mut best = (f64::INFINITY, u32::MAX);
+        let mut its_corners = [[0.0; 3]; 3];
         let mut open = vec![(0.0, 0)];
         while let Some((distance, node)) = open.pop() {
             // Boxes are wider than what they hold, so one at the same distance holds nothing nearer.
@@ -70,6 +84,7 @@ impl Hierarchy {
                                 && accept(facet, &corners)
                             {
                                 best = found;
+                                its_corners = corners;
                             }
                         }
                     }
@@ -77,7 +92,7 @@ impl Hierarchy {
             }
             open[floor..].sort_by(|a, b| b.0.total_cmp(&a.0));
         }
-        best
+        (best.0, best.1, its_corners)
     }
 }
 
@@ -92,19 +107,42 @@ pub(super) fn distance_to(point: [f64; 3], corners: &[[f64; 3]; 3]) -> f64 {
     if inside && size > 0.0 {
         return dot(a, across).abs() / size.sqrt();
     }
-    let edges = [(a, b), (b, c), (c, a)].map(|(p, q)| {
+    let foot = nearest_foot([a, b, c]);
+    dot(foot, foot).sqrt()
+}
+
+/// Way from a point to the nearest point of a triangle, which may have no area.
+fn foot_on(point: [f64; 3], corners: &[[f64; 3]; 3]) -> [f64; 3] {
+    let [a, b, c] = corners.map(|corner| minus(corner, point));
+    let across = cross(minus(b, a), minus(c, a));
+    let size = dot(across, across);
+    let inside = [(a, b), (b, c), (c, a)]
+        .iter()
+        .all(|(p, q)| dot(cross(*p, *q), across) >= 0.0);
+    if inside && size > 0.0 {
+        let part = dot(a, across) / size;
+        return across.map(|x| part * x);
+    }
+    nearest_foot([a, b, c])
+}
+
+/// Way to the nearest point of the edges between corners that are given from where the way starts.
+fn nearest_foot([a, b, c]: [[f64; 3]; 3]) -> [f64; 3] {
+    let feet = [(a, b), (b, c), (c, a)].map(|(p, q)| {
         let edge = minus(q, p);
         let length = dot(edge, edge);
         let part = -dot(p, edge);
         let part = if part > 0.0 { part } else { 0.0 };
         let part = if part < length { part / length } else { 1.0 };
-        let foot = [0, 1, 2].map(|axis| p[axis] + part * edge[axis]);
-        dot(foot, foot).sqrt()
+        [0, 1, 2].map(|axis| p[axis] + part * edge[axis])
     });
-    edges.iter().fold(
-        f64::INFINITY,
-        |least, edge| if *edge < least { *edge } else { least },
-    )
+    let mut best = feet[0];
+    for foot in &feet[1..] {
+        if dot(*foot, *foot) < dot(best, best) {
+            best = *foot;
+        }
+    }
+    best
 }
 
 fn minus(a: [f64; 3], b: [f64; 3]) -> [f64; 3] {
