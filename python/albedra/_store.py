@@ -5,11 +5,12 @@ from __future__ import annotations
 import os
 import tempfile
 from pathlib import Path
-from typing import Any
-
-import numpy as np
+from typing import TYPE_CHECKING, Any
 
 from ._albedra import Outcome, __version__
+
+if TYPE_CHECKING:
+    import numpy as np
 
 FORMAT = "albedra outcome"
 """Attribute `format` of our files."""
@@ -86,12 +87,17 @@ def load(path: str | os.PathLike[str]) -> Outcome:
 
 
 def _write(file: Any, parts: dict[str, Any]) -> None:
+    import numpy as np
+
     file.attrs["format"] = FORMAT
     file.attrs["format_version"] = VERSION
     file.attrs["program_version"] = __version__
     file.attrs["title"] = "exact totals of photons traced by albedra, with their experiment"
-    for name in ("experiment", "history", "outputs", "checksum"):
+    for name in ("history", "outputs", "checksum"):
         file.attrs[name] = parts[name]
+    # Not an attribute, as those hold no more than 64 KiB.
+    text = file.create_dataset("experiment", data=parts["experiment"])
+    text.attrs["long_name"] = "the experiment, as TOML"
     file.attrs["seed"] = np.uint64(parts["seed"])
     for name, count in zip(COUNTERS, parts["counters"], strict=True):
         file.attrs[name] = np.uint64(count)
@@ -119,6 +125,8 @@ def _variable(
     sizes: dict[str, int],
     meaning: str,
 ) -> None:
+    import numpy as np
+
     options = {"fletcher32": True, "compression": "gzip", "shuffle": True} if values.size else {}
     variable = file.create_dataset(name, data=values, **options)
     variable.attrs["long_name"] = meaning
@@ -130,15 +138,16 @@ def _variable(
 
 
 def _read(file: Any) -> dict[str, Any]:
+    import numpy as np
+
     attributes = dict(file.attrs)
     if attributes.get("format") != FORMAT:
         raise ValueError(f"its attribute format must be {FORMAT!r}, got {attributes.get('format')!r}")
     version = int(attributes["format_version"])
     if version != VERSION:
         raise ValueError(f"version of its format must be {VERSION}, got {version}")
-    parts: dict[str, Any] = {
-        name: str(attributes[name]) for name in ("experiment", "history", "outputs", "checksum")
-    }
+    parts: dict[str, Any] = {name: str(attributes[name]) for name in ("history", "outputs", "checksum")}
+    parts["experiment"] = file["experiment"].asstr()[()]
     parts["seed"] = int(attributes["seed"])
     parts["counters"] = tuple(int(attributes[name]) for name in COUNTERS)
     parts["target"] = None

@@ -34,4 +34,4 @@ def test_importing_pulls_in_no_optional_package():
     child = subprocess.run([sys.executable, "-I", "-c", script], check=True, capture_output=True, text=True)
     loaded = set(child.stdout.split())
     assert "albedra" in loaded
-    assert loaded.isdisjoint({"matplotlib", "xarray", "pandas", "h5netcdf", "h5py", "tqdm"})
+    assert loaded.isdisjoint({"numpy", "matplotlib", "xarray", "pandas", "h5netcdf", "h5py", "tqdm"})

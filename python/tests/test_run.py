@@ -131,6 +131,19 @@ def test_a_bar_keeps_to_its_line():
     assert end == ""
 
 
+def test_a_notebook_gets_a_bar_of_tqdm(capfd):
+    from albedra._progress import _notebook_bar, close
+
+    bar = _notebook_bar()
+    bar(al.Progress._rebuild(50, 200, 1.0, 50.0, 3.0, 0.0123))
+    bar(al.Progress._rebuild(200, 200, 4.0, 50.0, 0.0, None))
+    close(bar, True)
+    shown = capfd.readouterr().err
+    assert "25%" in shown
+    assert "u 1.2 %" in shown
+    assert "200/200" in shown
+
+
 @pytest.mark.parametrize("threads", [1, 2, 7])
 def test_threads_do_not_change_a_bit(experiment, outcome, threads):
     assert experiment.trace(20_000, seed=7, threads=threads) == outcome
