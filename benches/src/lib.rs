@@ -1,4 +1,8 @@
-//! What the benches share: bodies, walls and lamps with fixed seeds.
+//! What the benches share: the cases that speed is measured on.
 //!
-//! A bench is a file in `benches/`, one a layer, with its throughput in photons. `peers/` holds the programs that a
-//! speed claim is measured against.
+//! `benches/` holds criterion's benches by layer, `src/bin/contender.rs` runs one case for `peers/run_peers.py`, and
+//! `peers/` holds the programs that a speed claim is measured against.
+
+mod case;
+
+pub use case::{Case, CaseError};

@@ -1,8 +1,8 @@
 //! Which photons end after a strike: roulette, limits, and nothing left.
 
-use super::block::{Block, Cause, Loss};
+use super::block::{Block, Cause, LANES, Loss};
 use super::level::{Level, Stage};
-use crate::math::{exp, quanta, smaller};
+use crate::math::{quanta, rough_exp2, smaller};
 
 /// Chance to survive, and what a survivor's weight is multiplied by: 1/8 and 8.
 const SURVIVAL: f64 = 0.125;
@@ -11,7 +11,8 @@ const GAIN: f64 = 8.0;
 /// When light photons play roulette, and when a photon has gone far enough.
 ///
 /// Below the threshold 2⁻¹² exp(−min(s, S)/σ), never below 2⁻⁴⁰, a photon survives with chance 1/8 and eight times its
-/// weight. It falls along the path s as the energy is expected to, so that late times keep photons.
+/// weight. It falls along the path s as the energy is expected to, so that late times keep photons. Any threshold is
+/// unbiased, so the exponential is taken roughly.
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Retirement {
     /// 1/σ in m⁻¹.
@@ -86,28 +87,32 @@ impl Stage for Sift<'_> {
 
     #[inline(always)]
     fn run(self) {
-        const FIRST: f64 = 1.0 / 4096.0;
-        const FLOOR: f64 = 1.0 / 1_099_511_627_776.0;
+        const FLOOR: f64 = -40.0;
         let Self {
             rules,
             block,
             ended,
         } = self;
         let live = block.live;
-        let [threshold, _] = &mut block.scratch;
-        for lane in 0..live {
-            let fallen =
-                FIRST * exp(-rules.decay_per_metre * smaller(block.path[lane], rules.stop));
-            threshold[lane] = if fallen > FLOOR { fallen } else { FLOOR };
-            block.departing[lane] = block.leaving[lane];
+        let halvings = rules.decay_per_metre * std::f64::consts::LOG2_E;
+        let mut over = [0_u64; LANES];
+        let (over, weight, path) = (&mut over[..live], &block.weight[..live], &block.path[..live]);
+        let (leaving, strikes) = (&block.leaving[..live], &block.strikes[..live]);
+        for i in 0..live {
+            let power = -12.0 - halvings * smaller(path[i], rules.stop);
+            let threshold = rough_exp2(if power > FLOOR { power } else { FLOOR });
+            let light = (weight[i] < threshold) | (leaving[i] == 0);
+            let far = (path[i] > rules.path_limit) | (strikes[i] >= rules.strike_limit);
+            over[i] = u64::from(light | far);
         }
-        for lane in 0..live {
-            let light = (block.weight[lane] < threshold[lane]) | (block.leaving[lane] == 0);
-            let far =
-                (block.path[lane] > rules.path_limit) | (block.strikes[lane] >= rules.strike_limit);
-            if light | far {
-                ended.push(lane as u16);
+        block.departing[..live].copy_from_slice(leaving);
+        // Few are over, so eight at a time are passed by.
+        for (eight, over) in over.chunks(8).enumerate() {
+            if over.iter().fold(0, |any, one| any | one) == 0 {
+                continue;
             }
+            let lanes = (8 * eight as u16..).zip(over);
+            ended.extend(lanes.filter(|&(_, &over)| over != 0).map(|(lane, _)| lane));
         }
     }
 }

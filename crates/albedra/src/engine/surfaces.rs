@@ -1,6 +1,6 @@
 //! What a strike finds: the row that was struck and what it does to the weight.
 
-use super::block::{Block, LANES};
+use super::block::Block;
 use super::level::{Level, Stage};
 use crate::geometry::{Frame, RegionShape};
 use crate::math::quanta;
@@ -51,18 +51,23 @@ impl Surfaces {
     }
 
     fn find_rows(&self, block: &mut Block) {
-        for lane in 0..block.live {
-            block.row[lane] = self.rows[block.surface[lane] as usize];
+        let live = block.live;
+        let (row, surface) = (&mut block.row[..live], &block.surface[..live]);
+        for i in 0..live {
+            row[i] = self.rows[surface[i] as usize];
         }
         if !self.any_placed {
             return;
         }
+        // Which lanes are placed cannot be predicted, so all are written down and only those are kept.
         block.placed.clear();
-        for lane in 0..block.live {
-            if self.placed[block.surface[lane] as usize] {
-                block.placed.push(lane as u16);
-            }
+        block.placed.resize(live, 0);
+        let mut kept = 0;
+        for (lane, &surface) in (0_u16..).zip(surface) {
+            block.placed[kept] = lane;
+            kept += usize::from(self.placed[surface as usize]);
         }
+        block.placed.truncate(kept);
         for &lane in &block.placed {
             let lane = usize::from(lane);
             let Some(plan) = &self.plans[self.walls[block.surface[lane] as usize] as usize] else {
@@ -96,7 +101,7 @@ impl Stage for Weigh<'_> {
         let live = self.block.live;
         let Block {
             row,
-            scratch,
+            scratch: [rho, _],
             weight,
             lost,
             leaving,
@@ -105,31 +110,19 @@ impl Stage for Weigh<'_> {
             strikes,
             ..
         } = self.block;
-        let rho = &mut scratch[0];
-        for lane in 0..live {
-            rho[lane] = self.reflectance[row[lane] as usize];
+        let (row, rho, weight) = (&row[..live], &mut rho[..live], &mut weight[..live]);
+        let (lost, leaving) = (&mut lost[..live], &mut leaving[..live]);
+        let (path, flight, strikes) = (&mut path[..live], &flight[..live], &mut strikes[..live]);
+        for i in 0..live {
+            rho[i] = self.reflectance[row[i] as usize];
         }
-        weigh(live, rho, weight, lost, leaving);
-        for lane in 0..live {
-            path[lane] += flight[lane];
-            strikes[lane] += 1;
+        for i in 0..live {
+            let after = weight[i] * rho[i];
+            lost[i] = weight[i] - after;
+            weight[i] = after;
+            leaving[i] = quanta(after);
+            path[i] += flight[i];
+            strikes[i] += 1;
         }
-    }
-}
-
-#[inline(always)]
-fn weigh(
-    live: usize,
-    rho: &[f64; LANES],
-    weight: &mut [f64; LANES],
-    lost: &mut [f64; LANES],
-    leaving: &mut [i64; LANES],
-) {
-    let live = if live < LANES { live } else { LANES };
-    for lane in 0..live {
-        let after = weight[lane] * rho[lane];
-        lost[lane] = weight[lane] - after;
-        weight[lane] = after;
-        leaving[lane] = quanta(after);
     }
 }

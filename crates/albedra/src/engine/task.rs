@@ -56,8 +56,8 @@ impl Task {
             if place.stop.load(Ordering::Relaxed) {
                 return None;
             }
-            plan.flight.next(level, block, &mut retries);
             counters.flights += block.live as u64;
+            plan.flight.next(level, block, &mut retries);
             counters.strikes += (block.live - block.missed.len()) as u64;
             give_up_missed(block, &mut counters);
             plan.passage.pass(level, block);

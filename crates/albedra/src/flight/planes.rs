@@ -11,110 +11,193 @@ use crate::engine::{Block, LANES, Level, NOWHERE, Stage};
 #[derive(Debug)]
 pub(crate) struct Planes {
     planes: Vec<[f64; 4]>,
+    slabs: Vec<[Slab; GROUP]>,
 }
+
+/// Slabs that are unrolled in the loop over lanes, so that the best candidate stays in registers meanwhile.
+const GROUP: usize = 3;
+
+/// Two parallel planes: a direction runs towards one of them, so that one candidate serves both.
+#[derive(Clone, Copy, Debug)]
+struct Slab {
+    normal: [f64; 3],
+    /// Bits of the offsets along and against the normal.
+    offset: [u64; 2],
+    /// The planes met along and against the normal.
+    plane: [u64; 2],
+}
+
+/// Where there is no second plane, it is infinitely far, and never nearer than anything.
+const NO_SLAB: Slab = Slab {
+    normal: [0.0; 3],
+    offset: [f64::INFINITY.to_bits(); 2],
+    plane: [NOWHERE; 2],
+};
 
 impl Planes {
     /// Planes as `[n.x, n.y, n.z, offset]`; the index is the surface.
     pub(crate) fn new(planes: Vec<[f64; 4]>) -> Self {
-        Self { planes }
+        let mut slabs: Vec<Slab> = Vec::new();
+        for (k, &[a, b, c, offset]) in (0_u64..).zip(&planes) {
+            let opposite = |slab: &&mut Slab| {
+                slab.plane[1] == NOWHERE && slab.normal == [-a, -b, -c]
+            };
+            if let Some(slab) = slabs.iter_mut().find(opposite) {
+                slab.offset[1] = offset.to_bits();
+                slab.plane[1] = k;
+            } else {
+                slabs.push(Slab {
+                    normal: [a, b, c],
+                    offset: [offset.to_bits(), NO_SLAB.offset[1]],
+                    plane: [k, NOWHERE],
+                });
+            }
+        }
+        let mut groups = vec![[NO_SLAB; GROUP]; slabs.len().div_ceil(GROUP)];
+        for (k, slab) in slabs.into_iter().enumerate() {
+            groups[k / GROUP][k % GROUP] = slab;
+        }
+        Self {
+            planes,
+            slabs: groups,
+        }
     }
 }
 
 impl Flight for Planes {
     fn next(&self, level: Level, block: &mut Block, _: &mut Retries) {
         level.run(Next {
-            planes: &self.planes,
+            planes: self,
             block,
         });
     }
 }
 
 struct Next<'a> {
-    planes: &'a [[f64; 4]],
+    planes: &'a Planes,
     block: &'a mut Block,
 }
-
-/// Lanes whose best candidate stays in registers while the planes pass by.
-const CHUNK: usize = 8;
 
 impl Stage for Next<'_> {
     type Output = ();
 
     #[inline(always)]
     fn run(self) {
-        let live = self.block.live;
-        let mut first = 0;
-        while first < live {
-            chunk(self.planes, self.block, first);
-            first += CHUNK;
-        }
+        let Self { planes, block } = self;
+        let mut best = [NOWHERE; LANES];
+        search(&planes.slabs, block, &mut best);
+        settle(&planes.planes, block, &mut best);
+        arrive(&planes.planes, block, &best);
     }
 }
 
+/// Finds the next plane of every lane. The best candidate so far is kept as distance = gap / speed, at first none,
+/// infinitely far; the gap is kept in `flight`, the speed in the first scratch column.
 #[inline(always)]
-fn take<T: Copy>(column: &[T; LANES], first: usize) -> [T; CHUNK] {
-    let mut out = [column[first]; CHUNK];
-    out.copy_from_slice(&column[first..first + CHUNK]);
-    out
-}
-
-#[inline(always)]
-fn chunk(planes: &[[f64; 4]], block: &mut Block, first: usize) {
-    let [x, y, z] = [
-        take(&block.position[0], first),
-        take(&block.position[1], first),
-        take(&block.position[2], first),
-    ];
-    let [dx, dy, dz] = [
-        take(&block.direction[0], first),
-        take(&block.direction[1], first),
-        take(&block.direction[2], first),
-    ];
-    let standing = take(&block.surface, first);
-
-    // The best candidate so far, as distance = gap / speed: at first none, infinitely far.
-    let mut gap = [1.0; CHUNK];
-    let mut speed = [0.0; CHUNK];
-    let mut best = [NOWHERE; CHUNK];
-    for (k, &[a, b, c, offset]) in (0_u64..).zip(planes) {
-        for i in 0..CHUNK {
-            let here = offset - (a * x[i] + b * y[i] + c * z[i]);
-            let closing = a * dx[i] + b * dy[i] + c * dz[i];
-            let nearer =
-                (standing[i] != k) & (closing > 0.0) & (here * speed[i] < gap[i] * closing);
-            gap[i] = if nearer { here } else { gap[i] };
-            speed[i] = if nearer { closing } else { speed[i] };
-            best[i] = if nearer { k } else { best[i] };
-        }
-    }
-    if best.contains(&NOWHERE) {
-        for i in 0..CHUNK {
-            if best[i] == NOWHERE {
-                best[i] = turned_from_least(planes, [dx[i], dy[i], dz[i]], standing[i]);
-                gap[i] = 0.0;
+fn search(slabs: &[[Slab; GROUP]], block: &mut Block, best: &mut [u64; LANES]) {
+    const SIGN: u64 = 1 << 63;
+    let live = block.live;
+    let Block {
+        position: [x, y, z],
+        direction: [dx, dy, dz],
+        surface,
+        flight,
+        scratch: [speed, _],
+        ..
+    } = block;
+    let (x, y, z) = (&x[..live], &y[..live], &z[..live]);
+    let (dx, dy, dz) = (&dx[..live], &dy[..live], &dz[..live]);
+    let standing = &surface[..live];
+    let (gap, speed, best) = (&mut flight[..live], &mut speed[..live], &mut best[..live]);
+    gap.fill(1.0);
+    speed.fill(0.0);
+    for &group in slabs {
+        for i in 0..live {
+            let (mut nearest, mut fastest, mut found) = (gap[i], speed[i], best[i]);
+            for slab in &group {
+                let [a, b, c] = slab.normal;
+                let along = a * x[i] + b * y[i] + c * z[i];
+                let closing = a * dx[i] + b * dy[i] + c * dz[i];
+                // Against the normal everything changes its sign: by bits, since a choice of constants would not vectorise.
+                let sign = closing.to_bits() & SIGN;
+                let against = 0_u64.wrapping_sub(sign >> 63);
+                let pick = |[front, back]: [u64; 2]| front ^ (against & (front ^ back));
+                let plane = pick(slab.plane);
+                let here = f64::from_bits(pick(slab.offset)) - f64::from_bits(along.to_bits() ^ sign);
+                let closing = f64::from_bits(closing.to_bits() ^ sign);
+                let nearer = (standing[i] != plane)
+                    & (closing > 0.0)
+                    & (here * fastest < nearest * closing);
+                nearest = if nearer { here } else { nearest };
+                fastest = if nearer { closing } else { fastest };
+                found = if nearer { plane } else { found };
             }
+            gap[i] = nearest;
+            speed[i] = fastest;
+            best[i] = found;
         }
     }
-    for i in 0..CHUNK {
+}
+
+/// Gives lanes that found no plane the one that they turn from least, at distance zero.
+#[inline(always)]
+fn settle(planes: &[[f64; 4]], block: &mut Block, best: &mut [u64; LANES]) {
+    let best = &mut best[..block.live];
+    let missing = best.iter().fold(0, |any, plane| any | plane >> 63);
+    if missing == 0 {
+        return;
+    }
+    for lane in 0..best.len() {
+        if best[lane] == NOWHERE {
+            let direction = [0, 1, 2].map(|axis| block.direction[axis][lane]);
+            best[lane] = turned_from_least(planes, direction, block.surface[lane]);
+            block.flight[lane] = 0.0;
+        }
+    }
+}
+
+/// Moves every lane to its plane.
+#[inline(always)]
+fn arrive(planes: &[[f64; 4]], block: &mut Block, best: &[u64; LANES]) {
+    let live = block.live;
+    let Block {
+        position: [x, y, z],
+        direction: [dx, dy, dz],
+        normal: [nx, ny, nz],
+        surface,
+        flight,
+        scratch: [speed, offset],
+        ..
+    } = block;
+    let (x, y, z) = (&mut x[..live], &mut y[..live], &mut z[..live]);
+    let (dx, dy, dz) = (&dx[..live], &dy[..live], &dz[..live]);
+    let (nx, ny, nz) = (&mut nx[..live], &mut ny[..live], &mut nz[..live]);
+    let (flight, speed, offset) = (&mut flight[..live], &speed[..live], &mut offset[..live]);
+    let best = &best[..live];
+    surface[..live].copy_from_slice(best);
+    // A loop of its own: what is looked up in a table does not vectorise.
+    for i in 0..live {
+        let [a, b, c, d] = planes[best[i] as usize];
+        nx[i] = -a;
+        ny[i] = -b;
+        nz[i] = -c;
+        offset[i] = d;
+    }
+    for i in 0..live {
         // A strike slightly behind is at zero.
-        let distance = if gap[i] > 0.0 { gap[i] / speed[i] } else { 0.0 };
-        let lane = first + i;
-        let [a, b, c, offset] = planes[best[i] as usize];
+        let gap = flight[i];
+        let distance = if gap > 0.0 { gap / speed[i] } else { 0.0 };
         let (px, py, pz) = (
             x[i] + distance * dx[i],
             y[i] + distance * dy[i],
             z[i] + distance * dz[i],
         );
         // Back onto the plane, so that rounding does not add up over strikes.
-        let off = offset - (a * px + b * py + c * pz);
-        block.position[0][lane] = px + off * a;
-        block.position[1][lane] = py + off * b;
-        block.position[2][lane] = pz + off * c;
-        block.normal[0][lane] = -a;
-        block.normal[1][lane] = -b;
-        block.normal[2][lane] = -c;
-        block.flight[lane] = distance;
-        block.surface[lane] = best[i];
+        let off = offset[i] + (nx[i] * px + ny[i] * py + nz[i] * pz);
+        x[i] = px - off * nx[i];
+        y[i] = py - off * ny[i];
+        z[i] = pz - off * nz[i];
+        flight[i] = distance;
     }
 }
 

@@ -6,7 +6,7 @@ pub(crate) mod order;
 mod quanta;
 mod wave;
 
-pub(crate) use exponential::{exp, ln, one_minus_exp_neg};
+pub(crate) use exponential::{ln, one_minus_exp_neg, rough_exp2};
 pub(crate) use order::{larger, smaller};
 pub(crate) use quanta::{ONE, index_below, quanta, split_quanta, wide_quanta};
 pub(crate) use wave::sin_cos_turn;

@@ -34,10 +34,12 @@ impl Stage for Pass<'_> {
         let Self { absorption, block } = self;
         let live = block.live;
         if absorption == 0.0 {
-            for lane in 0..live {
-                block.start_weight[lane] = block.weight[lane];
-                block.arriving[lane] = block.departing[lane];
-                block.dwell[lane] = block.weight[lane] * block.flight[lane];
+            block.start_weight[..live].copy_from_slice(&block.weight[..live]);
+            block.arriving[..live].copy_from_slice(&block.departing[..live]);
+            let (dwell, weight) = (&mut block.dwell[..live], &block.weight[..live]);
+            let flight = &block.flight[..live];
+            for i in 0..live {
+                dwell[i] = weight[i] * flight[i];
             }
             return;
         }

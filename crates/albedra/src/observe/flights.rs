@@ -86,29 +86,27 @@ impl Stage for Moments<'_> {
     #[inline(always)]
     fn run(self) -> Self::Output {
         let Self { rules, block, bins } = self;
-        let live = if block.live < LANES {
-            block.live
-        } else {
-            LANES
-        };
+        let live = block.live;
         let per_metre = 1.0 / rules.unit;
         let bins_per_metre = HISTOGRAM_BINS as f64 / rules.diagonal;
+        let (flight, weight) = (&block.flight[..live], &block.start_weight[..live]);
+        let (dwell, bins) = (&block.dwell[..live], &mut bins[..live]);
         // High parts are below 2³¹ and low parts below 2³⁰, so that sums over a block's lanes fit in 64 bits.
         let mut high = [0_i64; MOMENTS + 1];
         let mut low = [0_i64; MOMENTS + 1];
-        for lane in 0..live {
-            let length = block.flight[lane] * per_metre;
-            let mut scored = block.start_weight[lane];
+        for i in 0..live {
+            let length = flight[i] * per_metre;
+            let mut scored = weight[i];
             for k in 0..MOMENTS {
                 let (h, l) = split_quanta(scored);
-                high[k] += h;
-                low[k] += l;
+                high[k] = high[k].wrapping_add(h);
+                low[k] = low[k].wrapping_add(l);
                 scored *= length;
             }
-            let (h, l) = split_quanta(block.dwell[lane] * per_metre);
-            high[MOMENTS] += h;
-            low[MOMENTS] += l;
-            bins[lane] = index_below(block.flight[lane] * bins_per_metre, HISTOGRAM_BINS as f64);
+            let (h, l) = split_quanta(dwell[i] * per_metre);
+            high[MOMENTS] = high[MOMENTS].wrapping_add(h);
+            low[MOMENTS] = low[MOMENTS].wrapping_add(l);
+            bins[i] = index_below(flight[i] * bins_per_metre, HISTOGRAM_BINS as f64);
         }
         let mut sums = [0; MOMENTS + 1];
         for k in 0..=MOMENTS {
