@@ -2,6 +2,10 @@
 //!
 //! Kernels are private, so a layer shows as the difference of two cases: `planes/26` has 20 planes more than `box`,
 //! `facets/26` is a body that is not convex and so goes through the hierarchy.
+#![expect(
+    clippy::disallowed_methods,
+    reason = "corners of a bench's body, which decide no result"
+)]
 
 use std::hint::black_box;
 
@@ -16,9 +20,14 @@ const SIDES: u32 = 24;
 
 fn bench(criterion: &mut Criterion, group: &str, name: &str, experiment: &Experiment) {
     let mut group = criterion.benchmark_group(group);
-    group.sample_size(20).throughput(Throughput::Elements(PHOTONS));
+    group
+        .sample_size(20)
+        .throughput(Throughput::Elements(PHOTONS));
     group.bench_function(BenchmarkId::from_parameter(name), |bencher| {
-        bencher.iter(|| black_box(experiment.trace(PHOTONS).seed(1).threads(1).run()).expect("a valid experiment"));
+        bencher.iter(|| {
+            black_box(experiment.trace(PHOTONS).seed(1).threads(1).run())
+                .expect("a valid experiment")
+        });
     });
     group.finish();
 }

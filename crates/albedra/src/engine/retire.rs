@@ -96,7 +96,11 @@ impl Stage for Sift<'_> {
         let live = block.live;
         let halvings = rules.decay_per_metre * std::f64::consts::LOG2_E;
         let mut over = [0_u64; LANES];
-        let (over, weight, path) = (&mut over[..live], &block.weight[..live], &block.path[..live]);
+        let (over, weight, path) = (
+            &mut over[..live],
+            &block.weight[..live],
+            &block.path[..live],
+        );
         let (leaving, strikes) = (&block.leaving[..live], &block.strikes[..live]);
         for i in 0..live {
             let power = -12.0 - halvings * smaller(path[i], rules.stop);

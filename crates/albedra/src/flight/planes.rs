@@ -39,9 +39,8 @@ impl Planes {
     pub(crate) fn new(planes: Vec<[f64; 4]>) -> Self {
         let mut slabs: Vec<Slab> = Vec::new();
         for (k, &[a, b, c, offset]) in (0_u64..).zip(&planes) {
-            let opposite = |slab: &&mut Slab| {
-                slab.plane[1] == NOWHERE && slab.normal == [-a, -b, -c]
-            };
+            let opposite =
+                |slab: &&mut Slab| slab.plane[1] == NOWHERE && slab.normal == [-a, -b, -c];
             if let Some(slab) = slabs.iter_mut().find(opposite) {
                 slab.offset[1] = offset.to_bits();
                 slab.plane[1] = k;
@@ -123,11 +122,11 @@ fn search(slabs: &[[Slab; GROUP]], block: &mut Block, best: &mut [u64; LANES]) {
                 let against = 0_u64.wrapping_sub(sign >> 63);
                 let pick = |[front, back]: [u64; 2]| front ^ (against & (front ^ back));
                 let plane = pick(slab.plane);
-                let here = f64::from_bits(pick(slab.offset)) - f64::from_bits(along.to_bits() ^ sign);
+                let here =
+                    f64::from_bits(pick(slab.offset)) - f64::from_bits(along.to_bits() ^ sign);
                 let closing = f64::from_bits(closing.to_bits() ^ sign);
-                let nearer = (standing[i] != plane)
-                    & (closing > 0.0)
-                    & (here * fastest < nearest * closing);
+                let nearer =
+                    (standing[i] != plane) & (closing > 0.0) & (here * fastest < nearest * closing);
                 nearest = if nearer { here } else { nearest };
                 fastest = if nearer { closing } else { fastest };
                 found = if nearer { plane } else { found };
