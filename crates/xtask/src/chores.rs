@@ -106,8 +106,12 @@ fn lint(place: &Place, _: &[OsString]) -> Result<Vec<Step>, Failure> {
 }
 
 fn stats(place: &Place, extra: &[OsString]) -> Vec<Step> {
-    let long = "test --locked --release --package albedra-tests -- --include-ignored";
-    vec![Step::cargo(place, long).args(extra).counted()]
+    [
+        "test --locked --release --package albedra -- --ignored",
+        "test --locked --release --package albedra-tests -- --include-ignored",
+    ]
+    .map(|long| Step::cargo(place, long).args(extra).counted())
+    .into()
 }
 
 fn py(place: &Place, extra: &[OsString]) -> Result<Vec<Step>, Failure> {
