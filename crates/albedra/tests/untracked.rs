@@ -263,6 +263,23 @@ fn time_grids_with_an_odd_number_of_bins_hold_what_is_late() {
 }
 
 #[test]
+fn walls_just_ahead_on_needles_are_met() {
+    // This photon starts 6e-12 m before a wall of 1e-6 m by 1 m, whose distance comes out 1e-11 m too small.
+    let outline = L.map(|(x, y)| (1e-6 * x, 1e-6 * y));
+    let needle = Enclosure::extruded(&outline, 1.0)
+        .unwrap()
+        .coated(Coating::absorber());
+    let position = [0.0, 1.999994359445574e-6, -0.023825519329432013];
+    let direction = [0.5726114132643143, 0.5071697404510029, 0.6441234538272199];
+    let outcome = Experiment::new(&needle, Source::beam(position, direction))
+        .trace(64)
+        .run()
+        .unwrap();
+    nothing_is_lost("needle", &outcome);
+    assert_eq!(outcome.flux("side 5").unwrap().absorbed.value, 1.0);
+}
+
+#[test]
 fn lamps_on_walls_edges_and_a_little_outside_lose_nothing() {
     // Points within 1e-9 of the diagonal count as inside; half of their light leads outward at once.
     let bodies = [

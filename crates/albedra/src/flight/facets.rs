@@ -18,7 +18,7 @@ impl Facets {
     }
 
     /// Another try for a photon that found no wall, since rounding has put it a little outside: through the triangle
-    /// that it has slipped through already, else from the nearest point of the mesh, or out through what it stands on.
+    /// that it has slipped through already, else from the nearest point of the mesh, or into what lies nearest ahead.
     #[cold]
     fn retry(&self, origin: &mut [f64; 3], direction: [f64; 3], standing: u32) -> Option<Hit> {
         let overtaken = self.hierarchy.overtaken(*origin, direction, standing);
@@ -27,7 +27,7 @@ impl Facets {
             (nearest, *origin) = self.hierarchy.nearest_point(*origin);
             self.hierarchy
                 .next(*origin, direction, nearest)
-                .or_else(|| self.hierarchy.overtaken(*origin, direction, standing))
+                .or_else(|| self.hierarchy.nearly_met(*origin, direction, standing))
         })
     }
 }

@@ -37,10 +37,35 @@ impl Hierarchy {
         direction: [f64; 3],
         standing: u32,
     ) -> Option<Hit> {
+        self.facing_within(self.behind, origin, direction, standing)
+    }
+
+    /// Finds the triangle that a ray without any strike must have met, as a strike at zero: the nearest that faces it,
+    /// within 2⁻³⁰ of the largest coordinate.
+    ///
+    /// On needles the distance to a strike is uncertain by rounding times length over width, so that a wall just ahead
+    /// may seem to lie behind.
+    pub(crate) fn nearly_met(
+        &self,
+        origin: [f64; 3],
+        direction: [f64; 3],
+        standing: u32,
+    ) -> Option<Hit> {
+        self.facing_within(16_384.0 * self.behind, origin, direction, standing)
+    }
+
+    /// The nearest triangle that faces the ray, other than the one stood on, as a strike at zero if it is near enough.
+    fn facing_within(
+        &self,
+        reach: f64,
+        origin: [f64; 3],
+        direction: [f64; 3],
+        standing: u32,
+    ) -> Option<Hit> {
         let (distance, triangle, _) = self.nearest_of(origin, |facet, [a, b, c]| {
             facet.triangle != standing && dot(cross(minus(*b, *a), minus(*c, *a)), direction) > 0.0
         });
-        (distance <= self.behind).then_some(Hit { t: 0.0, triangle })
+        (distance <= reach).then_some(Hit { t: 0.0, triangle })
     }
 
     /// Finds the nearest of the triangles that are accepted: its distance, its index and its corners.
