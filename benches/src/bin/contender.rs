@@ -14,7 +14,7 @@ use albedra_benches::Case;
 use cpu_time::ProcessTime;
 
 const USAGE: &str = "usage: contender --case CASE [--photons N] [--seed N] [--threads N] [--mesh FILE] \
-                     [--lanes N] [--level base|avx2]";
+                     [--lanes N] [--level base|avx2|avx512]";
 
 struct Options {
     case: Case,
@@ -73,7 +73,8 @@ fn level(name: &str) -> Result<Level, String> {
     let index = match name {
         "base" => 0,
         "avx2" => 1,
-        _ => return Err(format!("level must be base or avx2, got {name}")),
+        "avx512" => 2,
+        _ => return Err(format!("level must be base, avx2 or avx512, got {name}")),
     };
     levels
         .get(index)

@@ -270,7 +270,11 @@ fn walls_just_ahead_on_needles_are_met() {
         .unwrap()
         .coated(Coating::absorber());
     let position = [0.0, 1.999_994_359_445_574e-6, -0.023_825_519_329_432_013];
-    let direction = [0.572_611_413_264_314_3, 0.507_169_740_451_002_9, 0.644_123_453_827_219_9];
+    let direction = [
+        0.572_611_413_264_314_3,
+        0.507_169_740_451_002_9,
+        0.644_123_453_827_219_9,
+    ];
     let outcome = Experiment::new(&needle, Source::beam(position, direction))
         .trace(64)
         .run()

@@ -54,7 +54,7 @@ pub(crate) struct Block {
     pub(crate) path: Column,
     /// Length of this flight, metres.
     pub(crate) flight: Column,
-    /// Energy-weighted length of this flight, ∫ weight ds, metres.
+    /// Energy-weighted length of this flight, ∫ weight ds, metres; only in a medium that absorbs.
     pub(crate) dwell: Column,
     /// Quanta of the weight: at the start of the flight, on arrival, after the strike.
     pub(crate) departing: [i64; LANES],
@@ -78,7 +78,9 @@ pub(crate) struct Block {
     pub(crate) missed: Vec<u16>,
     pub(crate) losses: Vec<Loss>,
     pub(crate) streams: Streams,
+    /// For use within a stage.
     pub(crate) scratch: [Column; 2],
+    pub(crate) marks: [u64; LANES],
 }
 
 impl Block {
@@ -110,6 +112,7 @@ impl Block {
             losses: Vec::with_capacity(3 * LANES),
             streams: Streams::new(),
             scratch: [column; 2],
+            marks: [0; LANES],
         })
     }
 

@@ -23,6 +23,8 @@ enum Set {
     Base,
     #[cfg(target_arch = "x86_64")]
     Avx2,
+    #[cfg(target_arch = "x86_64")]
+    Avx512,
 }
 
 /// A loop over lanes that is compiled once for each level. Implementations of `run` are `#[inline(always)]`; a closure
@@ -37,7 +39,14 @@ impl Level {
     pub fn available() -> Vec<Self> {
         #[cfg(target_arch = "x86_64")]
         if is_x86_feature_detected!("avx2") {
-            return vec![Self(Set::Base), Self(Set::Avx2)];
+            let mut levels = vec![Self(Set::Base), Self(Set::Avx2)];
+            if is_x86_feature_detected!("avx512f")
+                && is_x86_feature_detected!("avx512dq")
+                && is_x86_feature_detected!("avx512vl")
+            {
+                levels.push(Self(Set::Avx512));
+            }
+            return levels;
         }
         vec![Self(Set::Base)]
     }
@@ -55,6 +64,9 @@ impl Level {
             // SAFETY: the field is private and holds `Avx2` only where `available` has detected it.
             #[cfg(target_arch = "x86_64")]
             Set::Avx2 => unsafe { avx2(stage) },
+            // SAFETY: as above, for all three features.
+            #[cfg(target_arch = "x86_64")]
+            Set::Avx512 => unsafe { avx512(stage) },
         }
     }
 }
@@ -62,5 +74,11 @@ impl Level {
 #[cfg(target_arch = "x86_64")]
 #[target_feature(enable = "avx2")]
 fn avx2<S: Stage>(stage: S) -> S::Output {
+    stage.run()
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx2,avx512f,avx512dq,avx512vl")]
+fn avx512<S: Stage>(stage: S) -> S::Output {
     stage.run()
 }

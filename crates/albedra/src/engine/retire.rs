@@ -1,6 +1,6 @@
 //! Which photons end after a strike: roulette, limits, and nothing left.
 
-use super::block::{Block, Cause, LANES, Loss};
+use super::block::{Block, Cause, Loss};
 use super::level::{Level, Stage};
 use crate::math::{quanta, rough_exp2, smaller};
 
@@ -95,12 +95,8 @@ impl Stage for Sift<'_> {
         } = self;
         let live = block.live;
         let halvings = rules.decay_per_metre * std::f64::consts::LOG2_E;
-        let mut over = [0_u64; LANES];
-        let (over, weight, path) = (
-            &mut over[..live],
-            &block.weight[..live],
-            &block.path[..live],
-        );
+        let (weight, path) = (&block.weight[..live], &block.path[..live]);
+        let over = &mut block.marks[..live];
         let (leaving, strikes) = (&block.leaving[..live], &block.strikes[..live]);
         for i in 0..live {
             let power = -12.0 - halvings * smaller(path[i], rules.stop);

@@ -97,20 +97,16 @@ impl Streams {
         }
     }
 
-    /// Draws one number in [0, 1) for each of the first `lanes` lanes.
+    /// Draws for each of the first `lanes` lanes as many numbers in [0, 1) as there are columns.
     #[inline(always)]
-    pub(crate) fn draw(&mut self, lanes: usize, out: &mut [f64; LANES]) {
-        let [s0, s1, s2, s3] = &mut self.state;
-        let (s0, s1, s2, s3) = (
-            &mut s0[..lanes],
-            &mut s1[..lanes],
-            &mut s2[..lanes],
-            &mut s3[..lanes],
-        );
-        let out = &mut out[..lanes];
+    pub(crate) fn draw<const N: usize>(&mut self, lanes: usize, out: &mut [[f64; LANES]; N]) {
+        let [s0, s1, s2, s3] = self.state.each_mut().map(|column| &mut column[..lanes]);
+        let mut out = out.each_mut().map(|column| &mut column[..lanes]);
         for i in 0..lanes {
             let mut s = [s0[i], s1[i], s2[i], s3[i]];
-            out[i] = unit(step(&mut s));
+            for column in &mut out {
+                column[i] = unit(step(&mut s));
+            }
             [s0[i], s1[i], s2[i], s3[i]] = s;
         }
     }
@@ -186,12 +182,13 @@ mod tests {
         for lane in 0..LANES {
             streams.seed(lane, 7, 1000 + lane as u64);
         }
-        let mut drawn = [0.0; LANES];
+        let mut drawn = [[0.0; LANES]; 2];
         let mut library: Vec<_> = (0..LANES as u64).map(|i| library(7, 1000 + i)).collect();
         for _ in 0..5 {
             streams.draw(LANES, &mut drawn);
-            for (x, rng) in drawn.iter().zip(&mut library) {
-                assert_eq!(*x, rng.random::<f64>());
+            for (lane, rng) in library.iter_mut().enumerate() {
+                assert_eq!(drawn[0][lane], rng.random::<f64>());
+                assert_eq!(drawn[1][lane], rng.random::<f64>());
             }
         }
         for (lane, rng) in library.iter_mut().enumerate() {

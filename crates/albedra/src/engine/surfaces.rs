@@ -44,30 +44,39 @@ impl Surfaces {
     /// Finds the rows that were struck, and books the reflectance on the weight.
     pub(crate) fn strike(&self, level: Level, block: &mut Block) {
         self.find_rows(block);
-        level.run(Weigh {
-            reflectance: &self.reflectance,
-            block,
-        });
+        level.run(Weigh { block });
     }
 
+    /// Looks up each lane's row and, in the first scratch column, its reflectance.
     fn find_rows(&self, block: &mut Block) {
         let live = block.live;
         let (row, surface) = (&mut block.row[..live], &block.surface[..live]);
-        for i in 0..live {
-            row[i] = self.rows[surface[i] as usize];
-        }
+        let rho = &mut block.scratch[0][..live];
         if !self.any_placed {
+            for i in 0..live {
+                row[i] = self.rows[surface[i] as usize];
+                rho[i] = self.reflectance[row[i] as usize];
+            }
             return;
         }
         // Which lanes are placed cannot be predicted, so all are written down and only those are kept.
         block.placed.clear();
         block.placed.resize(live, 0);
+        let placed = &mut block.placed[..live];
         let mut kept = 0;
-        for (lane, &surface) in (0_u16..).zip(surface) {
-            block.placed[kept] = lane;
-            kept += usize::from(self.placed[surface as usize]);
+        for i in 0..live {
+            let surface = surface[i] as usize;
+            row[i] = self.rows[surface];
+            rho[i] = self.reflectance[row[i] as usize];
+            placed[kept] = i as u16;
+            kept += usize::from(self.placed[surface]);
         }
         block.placed.truncate(kept);
+        self.find_places(block);
+    }
+
+    /// Finds the wall coordinates where they are needed, and the regions there.
+    fn find_places(&self, block: &mut Block) {
         for &lane in &block.placed {
             let lane = usize::from(lane);
             let Some(plan) = &self.plans[self.walls[block.surface[lane] as usize] as usize] else {
@@ -83,13 +92,13 @@ impl Surfaces {
             block.uv[1][lane] = v;
             if let Some(row) = plan.region_row(u, v) {
                 block.row[lane] = row;
+                block.scratch[0][lane] = self.reflectance[row as usize];
             }
         }
     }
 }
 
 struct Weigh<'a> {
-    reflectance: &'a [f64],
     block: &'a mut Block,
 }
 
@@ -100,7 +109,6 @@ impl Stage for Weigh<'_> {
     fn run(self) {
         let live = self.block.live;
         let Block {
-            row,
             scratch: [rho, _],
             weight,
             lost,
@@ -110,12 +118,9 @@ impl Stage for Weigh<'_> {
             strikes,
             ..
         } = self.block;
-        let (row, rho, weight) = (&row[..live], &mut rho[..live], &mut weight[..live]);
+        let (rho, weight) = (&rho[..live], &mut weight[..live]);
         let (lost, leaving) = (&mut lost[..live], &mut leaving[..live]);
         let (path, flight, strikes) = (&mut path[..live], &flight[..live], &mut strikes[..live]);
-        for i in 0..live {
-            rho[i] = self.reflectance[row[i] as usize];
-        }
         for i in 0..live {
             let after = weight[i] * rho[i];
             lost[i] = weight[i] - after;

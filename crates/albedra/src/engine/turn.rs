@@ -26,9 +26,8 @@ impl Stage for Turn<'_> {
     #[inline(always)]
     fn run(self) {
         let live = self.block.live;
-        let [first, second] = &mut self.block.scratch;
-        self.block.streams.draw(live, first);
-        self.block.streams.draw(live, second);
+        let drawn = &mut self.block.scratch;
+        self.block.streams.draw(live, drawn);
         if self.mirrors {
             mixed(self.share, self.block);
         } else {

@@ -204,6 +204,7 @@ fn layout(
     let flights = FlightMoments {
         unit: power_of_two_above(diagonal),
         diagonal,
+        absorbing: enclosure.medium.absorption() > 0.0,
     };
 
     let rows_at = 0;
@@ -312,13 +313,14 @@ fn ground(solid: &Solid) -> (Ground, Box<dyn Flight>) {
             .map(|&facet| of_facet[facet as usize])
             .collect();
         let walls = convex.iter().map(|plane| plane.wall).collect();
+        let flight = Box::new(Planes::new(&planes));
         return (
             Ground {
                 walls,
-                planes: planes.clone(),
+                planes,
                 of_triangle,
             },
-            Box::new(Planes::new(planes)),
+            flight,
         );
     }
     let planes: Vec<_> = (0..solid.triangles.len())

@@ -5,12 +5,13 @@
 //! leaves), the plane that the photon turns from least is taken at distance zero, so that no photon is ever lost.
 
 use super::{Flight, Retries};
-use crate::engine::{Block, LANES, Level, NOWHERE, Stage};
+use crate::engine::{Block, Level, NOWHERE, Stage};
 
 /// Planes n·x = offset with outward unit normals; the body is where n·x ≤ offset for all.
 #[derive(Debug)]
 pub(crate) struct Planes {
-    planes: Vec<[f64; 4]>,
+    /// For each plane its inward normal, and its offset along the outward one.
+    inward: Vec<[f64; 4]>,
     slabs: Vec<[Slab; GROUP]>,
 }
 
@@ -36,9 +37,9 @@ const NO_SLAB: Slab = Slab {
 
 impl Planes {
     /// Planes as `[n.x, n.y, n.z, offset]`; the index is the surface.
-    pub(crate) fn new(planes: Vec<[f64; 4]>) -> Self {
+    pub(crate) fn new(planes: &[[f64; 4]]) -> Self {
         let mut slabs: Vec<Slab> = Vec::new();
-        for (k, &[a, b, c, offset]) in (0_u64..).zip(&planes) {
+        for (k, &[a, b, c, offset]) in (0_u64..).zip(planes) {
             let opposite =
                 |slab: &&mut Slab| slab.plane[1] == NOWHERE && slab.normal == [-a, -b, -c];
             if let Some(slab) = slabs.iter_mut().find(opposite) {
@@ -56,8 +57,9 @@ impl Planes {
         for (k, slab) in slabs.into_iter().enumerate() {
             groups[k / GROUP][k % GROUP] = slab;
         }
+        let inward = planes.iter().map(|&[a, b, c, offset]| [-a, -b, -c, offset]);
         Self {
-            planes,
+            inward: inward.collect(),
             slabs: groups,
         }
     }
@@ -83,18 +85,47 @@ impl Stage for Next<'_> {
     #[inline(always)]
     fn run(self) {
         let Self { planes, block } = self;
-        let mut best = [NOWHERE; LANES];
-        search(&planes.slabs, block, &mut best);
-        settle(&planes.planes, block, &mut best);
-        arrive(&planes.planes, block, &best);
+        search(&planes.slabs, block);
+        settle(&planes.inward, block);
+        arrive(&planes.inward, block);
     }
 }
 
-/// Finds the next plane of every lane. The best candidate so far is kept as distance = gap / speed, at first none,
-/// infinitely far; the gap is kept in `flight`, the speed in the first scratch column.
+struct Ray {
+    at: [f64; 3],
+    along: [f64; 3],
+    standing: u64,
+}
+
+/// The nearest candidate, as gap, speed and plane, of what was found so far and a group of slabs.
 #[inline(always)]
-fn search(slabs: &[[Slab; GROUP]], block: &mut Block, best: &mut [u64; LANES]) {
+fn nearer_of(group: [Slab; GROUP], ray: &Ray, so_far: (f64, f64, u64)) -> (f64, f64, u64) {
     const SIGN: u64 = 1 << 63;
+    let (mut gap, mut speed, mut best) = so_far;
+    let ([x, y, z], [dx, dy, dz]) = (ray.at, ray.along);
+    for slab in group {
+        let [a, b, c] = slab.normal;
+        let along = a * x + b * y + c * z;
+        let closing = a * dx + b * dy + c * dz;
+        // Against the normal everything changes its sign: by bits, since a choice of constants would not vectorise.
+        let sign = closing.to_bits() & SIGN;
+        let against = 0_u64.wrapping_sub(sign >> 63);
+        let pick = |[front, back]: [u64; 2]| front ^ (against & (front ^ back));
+        let plane = pick(slab.plane);
+        let here = f64::from_bits(pick(slab.offset)) - f64::from_bits(along.to_bits() ^ sign);
+        let closing = f64::from_bits(closing.to_bits() ^ sign);
+        let nearer = (ray.standing != plane) & (closing > 0.0) & (here * speed < gap * closing);
+        gap = if nearer { here } else { gap };
+        speed = if nearer { closing } else { speed };
+        best = if nearer { plane } else { best };
+    }
+    (gap, speed, best)
+}
+
+/// Finds the next plane of every lane. The best candidate so far is kept as distance = gap / speed, at first none,
+/// infinitely far; the gap is kept in `flight`, the speed in the first scratch column, the plane in `marks`.
+#[inline(always)]
+fn search(slabs: &[[Slab; GROUP]], block: &mut Block) {
     let live = block.live;
     let Block {
         position: [x, y, z],
@@ -102,6 +133,7 @@ fn search(slabs: &[[Slab; GROUP]], block: &mut Block, best: &mut [u64; LANES]) {
         surface,
         flight,
         scratch: [speed, _],
+        marks: best,
         ..
     } = block;
     let (x, y, z) = (&x[..live], &y[..live], &z[..live]);
@@ -110,38 +142,25 @@ fn search(slabs: &[[Slab; GROUP]], block: &mut Block, best: &mut [u64; LANES]) {
     let (gap, speed, best) = (&mut flight[..live], &mut speed[..live], &mut best[..live]);
     gap.fill(1.0);
     speed.fill(0.0);
+    best.fill(NOWHERE);
     for &group in slabs {
         for i in 0..live {
-            let (mut nearest, mut fastest, mut found) = (gap[i], speed[i], best[i]);
-            for slab in &group {
-                let [a, b, c] = slab.normal;
-                let along = a * x[i] + b * y[i] + c * z[i];
-                let closing = a * dx[i] + b * dy[i] + c * dz[i];
-                // Against the normal everything changes its sign: by bits, since a choice of constants would not vectorise.
-                let sign = closing.to_bits() & SIGN;
-                let against = 0_u64.wrapping_sub(sign >> 63);
-                let pick = |[front, back]: [u64; 2]| front ^ (against & (front ^ back));
-                let plane = pick(slab.plane);
-                let here =
-                    f64::from_bits(pick(slab.offset)) - f64::from_bits(along.to_bits() ^ sign);
-                let closing = f64::from_bits(closing.to_bits() ^ sign);
-                let nearer =
-                    (standing[i] != plane) & (closing > 0.0) & (here * fastest < nearest * closing);
-                nearest = if nearer { here } else { nearest };
-                fastest = if nearer { closing } else { fastest };
-                found = if nearer { plane } else { found };
-            }
-            gap[i] = nearest;
-            speed[i] = fastest;
-            best[i] = found;
+            let so_far = (gap[i], speed[i], best[i]);
+            let ray = Ray {
+                at: [x[i], y[i], z[i]],
+                along: [dx[i], dy[i], dz[i]],
+                standing: standing[i],
+            };
+            (gap[i], speed[i], best[i]) = nearer_of(group, &ray, so_far);
         }
     }
 }
 
 /// Gives lanes that found no plane the one that they turn from least, at distance zero.
 #[inline(always)]
-fn settle(planes: &[[f64; 4]], block: &mut Block, best: &mut [u64; LANES]) {
-    let best = &mut best[..block.live];
+fn settle(inward: &[[f64; 4]], block: &mut Block) {
+    let best = &mut block.marks[..block.live];
+    // No index of a plane has this bit.
     let missing = best.iter().fold(0, |any, plane| any | plane >> 63);
     if missing == 0 {
         return;
@@ -149,7 +168,7 @@ fn settle(planes: &[[f64; 4]], block: &mut Block, best: &mut [u64; LANES]) {
     for lane in 0..best.len() {
         if best[lane] == NOWHERE {
             let direction = [0, 1, 2].map(|axis| block.direction[axis][lane]);
-            best[lane] = turned_from_least(planes, direction, block.surface[lane]);
+            best[lane] = turned_from_least(inward, direction, block.surface[lane]);
             block.flight[lane] = 0.0;
         }
     }
@@ -157,7 +176,7 @@ fn settle(planes: &[[f64; 4]], block: &mut Block, best: &mut [u64; LANES]) {
 
 /// Moves every lane to its plane.
 #[inline(always)]
-fn arrive(planes: &[[f64; 4]], block: &mut Block, best: &[u64; LANES]) {
+fn arrive(inward: &[[f64; 4]], block: &mut Block) {
     let live = block.live;
     let Block {
         position: [x, y, z],
@@ -166,6 +185,7 @@ fn arrive(planes: &[[f64; 4]], block: &mut Block, best: &[u64; LANES]) {
         surface,
         flight,
         scratch: [speed, offset],
+        marks: best,
         ..
     } = block;
     let (x, y, z) = (&mut x[..live], &mut y[..live], &mut z[..live]);
@@ -176,11 +196,7 @@ fn arrive(planes: &[[f64; 4]], block: &mut Block, best: &[u64; LANES]) {
     surface[..live].copy_from_slice(best);
     // A loop of its own: what is looked up in a table does not vectorise.
     for i in 0..live {
-        let [a, b, c, d] = planes[best[i] as usize];
-        nx[i] = -a;
-        ny[i] = -b;
-        nz[i] = -c;
-        offset[i] = d;
+        [nx[i], ny[i], nz[i], offset[i]] = inward[best[i] as usize];
     }
     for i in 0..live {
         // A strike slightly behind is at zero.
@@ -202,12 +218,12 @@ fn arrive(planes: &[[f64; 4]], block: &mut Block, best: &[u64; LANES]) {
 
 /// The plane, other than the one stood on, that the direction closes in on fastest.
 #[cold]
-fn turned_from_least(planes: &[[f64; 4]], direction: [f64; 3], standing: u64) -> u64 {
-    let mut best = (f64::NEG_INFINITY, 0);
-    for (k, plane) in (0_u64..).zip(planes) {
-        let closing = plane[0] * direction[0] + plane[1] * direction[1] + plane[2] * direction[2];
-        if k != standing && closing > best.0 {
-            best = (closing, k);
+fn turned_from_least(inward: &[[f64; 4]], direction: [f64; 3], standing: u64) -> u64 {
+    let mut best = (f64::INFINITY, 0);
+    for (k, plane) in (0_u64..).zip(inward) {
+        let leaving = plane[0] * direction[0] + plane[1] * direction[1] + plane[2] * direction[2];
+        if k != standing && leaving < best.0 {
+            best = (leaving, k);
         }
     }
     best.1

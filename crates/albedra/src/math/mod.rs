@@ -8,7 +8,7 @@ mod wave;
 
 pub(crate) use exponential::{ln, one_minus_exp_neg, rough_exp2};
 pub(crate) use order::{larger, smaller};
-pub(crate) use quanta::{ONE, index_below, quanta, split_quanta, wide_quanta};
+pub(crate) use quanta::{LaneSum, ONE, index_below, quanta, wide, wide_quanta};
 pub(crate) use wave::sin_cos_turn;
 
 /// Adding and subtracting 1.5 · 2⁵² rounds to an integer, ties to even, without a library call; the low bits of the

@@ -9,13 +9,52 @@ const HALF_WAY: f64 = (1_u64 << 30) as f64;
 
 /// Rounds `x` (|x| < 2²⁰) to quanta of 2⁻⁶⁰, as a high part in units of 2³⁰ quanta and a low part, |low| ≤ 2²⁹.
 #[inline(always)]
-pub(crate) fn split_quanta(x: f64) -> (i64, i64) {
+fn split_quanta(x: f64) -> (i64, i64) {
+    let (high, low) = shifted_quanta(x);
+    let integer = |bits: u64| bits.wrapping_sub(MAGIC.to_bits()).cast_signed();
+    (integer(high), integer(low))
+}
+
+/// The parts of [`split_quanta`], each still with the bits of `MAGIC` on top.
+#[inline(always)]
+fn shifted_quanta(x: f64) -> (u64, u64) {
     let scaled = x * HALF_WAY;
     let high = scaled + MAGIC;
     let rest = scaled - (high - MAGIC);
     let low = rest * HALF_WAY + MAGIC;
-    let integer = |sum: f64| sum.to_bits().wrapping_sub(MAGIC.to_bits()).cast_signed();
-    (integer(high), integer(low))
+    (high.to_bits(), low.to_bits())
+}
+
+/// A sum of quanta in a loop over at most 2²⁰ lanes, in 64 bits so that the loop vectorises.
+#[derive(Clone, Copy, Debug, Default)]
+pub(crate) struct LaneSum {
+    high: u64,
+    low: u64,
+}
+
+impl LaneSum {
+    /// Adds `x` (|x| < 2²⁰), rounded to quanta.
+    #[inline(always)]
+    pub(crate) fn add(&mut self, x: f64) {
+        let (high, low) = shifted_quanta(x);
+        self.high = self.high.wrapping_add(high);
+        self.low = self.low.wrapping_add(low);
+    }
+
+    /// Adds quanta that are not negative.
+    #[inline(always)]
+    pub(crate) fn add_whole(&mut self, quanta: i64) {
+        let quanta = quanta.cast_unsigned();
+        self.high = self.high.wrapping_add(quanta >> 30);
+        self.low = self.low.wrapping_add(quanta & ((1 << 30) - 1));
+    }
+
+    /// The sum, after `add` was called so many times.
+    pub(crate) fn quanta(self, adds: usize) -> i128 {
+        let top = MAGIC.to_bits().wrapping_mul(adds as u64);
+        let integer = |sum: u64| i128::from(sum.wrapping_sub(top).cast_signed());
+        (integer(self.high) << 30) + integer(self.low)
+    }
 }
 
 /// Rounds `x` (|x| ≤ 1) to the nearest number of quanta of 2⁻⁶⁰, ties to even.
@@ -30,6 +69,12 @@ pub(crate) fn quanta(x: f64) -> i64 {
 pub(crate) fn wide_quanta(x: f64) -> i128 {
     let (high, low) = split_quanta(x);
     (i128::from(high) << 30) + i128::from(low)
+}
+
+/// Quanta that are not negative, in 128 bits; spares the loops that book them the sign.
+#[inline(always)]
+pub(crate) fn wide(quanta: i64) -> i128 {
+    i128::from(quanta.cast_unsigned())
 }
 
 /// The integer part of `x`, but at most `count` − 1: the index among `count` items; a whole number may give the integer
@@ -81,6 +126,19 @@ mod tests {
             assert_eq!(quanta(x), nearest, "{x}");
             x *= 0.973;
         }
+    }
+
+    #[test]
+    fn sums_over_lanes_equal_sums_of_quanta() {
+        let values = || (0..4000).map(|k| 0.37_f64 * f64::from(k) - 12.3);
+        let (mut sum, mut whole) = (LaneSum::default(), LaneSum::default());
+        values().for_each(|x| sum.add(x));
+        assert_eq!(sum.quanta(4000), values().map(wide_quanta).sum());
+        (0..4000).for_each(|k| whole.add_whole(ONE - k));
+        assert_eq!(
+            whole.quanta(0),
+            (0..4000).map(|k| i128::from(ONE - k)).sum()
+        );
     }
 
     #[test]

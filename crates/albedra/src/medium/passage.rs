@@ -36,16 +36,11 @@ impl Stage for Pass<'_> {
         if absorption == 0.0 {
             block.start_weight[..live].copy_from_slice(&block.weight[..live]);
             block.arriving[..live].copy_from_slice(&block.departing[..live]);
-            let (dwell, weight) = (&mut block.dwell[..live], &block.weight[..live]);
-            let flight = &block.flight[..live];
-            for i in 0..live {
-                dwell[i] = weight[i] * flight[i];
-            }
             return;
         }
         let per = 1.0 / absorption;
         let [draws, share] = &mut block.scratch;
-        block.streams.draw(live, draws);
+        block.streams.draw(live, std::array::from_mut(draws));
         for lane in 0..live {
             let depth = absorption * block.flight[lane];
             let absorbed = one_minus_exp_neg(depth);

@@ -1,8 +1,8 @@
 //! When energy left: the pulse response and, from its first moments, the switch curves.
 
 use super::Observable;
-use crate::engine::{Block, LANES, Level, Loss, Stage};
-use crate::math::{ONE, index_below, quanta, wide_quanta};
+use crate::engine::{Block, Level, Loss, Stage};
+use crate::math::{ONE, index_below, quanta, wide, wide_quanta};
 
 /// Edges of the time grid as paths, and one bin more for all that is later.
 #[derive(Clone, Debug, PartialEq)]
@@ -64,35 +64,18 @@ impl Observable for DecayBins {
     }
 
     fn strike(&self, level: Level, block: &Block, cells: &mut [i128]) {
-        let Some(per_metre) = self.time.per_metre else {
-            for lane in 0..block.live {
-                let (bin, share) = self.time.place(block.path[lane]);
-                cells[2 * bin] += i128::from(block.arriving[lane] - block.leaving[lane]);
-                cells[2 * bin + 1] += wide_quanta(block.lost[lane] * share);
-            }
+        let (pairs, _) = cells.as_chunks_mut();
+        if let Some(per_metre) = self.time.per_metre {
+            level.run(Book {
+                time: &self.time,
+                per_metre,
+                block,
+                pairs,
+            });
             return;
-        };
-        let mut bins = [0; LANES];
-        let mut moments = [0; LANES];
-        let last = self.time.bins();
-        level.run(Place {
-            per_metre,
-            last,
-            block,
-            bins: &mut bins,
-            moments: &mut moments,
-        });
+        }
         for lane in 0..block.live {
-            let cell = 2 * bins[lane] as usize;
-            if cell == 2 * last {
-                let (_, share) = self.time.place(block.path[lane]);
-                cells[cell] += i128::from(block.arriving[lane] - block.leaving[lane]);
-                cells[cell + 1] += wide_quanta(block.lost[lane] * share);
-                continue;
-            }
-            let pair = &mut cells[cell..cell + 2];
-            pair[0] += i128::from(block.arriving[lane] - block.leaving[lane]);
-            pair[1] += i128::from(moments[lane]);
+            book(&self.time, block, lane, pairs);
         }
     }
 
@@ -105,34 +88,64 @@ impl Observable for DecayBins {
     }
 }
 
-/// Bins and moments of a strike in each lane, for equal bins; moments after the last edge are not of use.
-struct Place<'a> {
-    per_metre: f64,
-    last: usize,
-    block: &'a Block,
-    bins: &'a mut [u64; LANES],
-    moments: &'a mut [i64; LANES],
+/// Books one strike anywhere.
+fn book(time: &TimeBins, block: &Block, lane: usize, pairs: &mut [[i128; 2]]) {
+    let (bin, share) = time.place(block.path[lane]);
+    pairs[bin][0] += i128::from(block.arriving[lane] - block.leaving[lane]);
+    pairs[bin][1] += wide_quanta(block.lost[lane] * share);
 }
 
-impl Stage for Place<'_> {
+/// Books the strikes of all lanes, for equal bins.
+struct Book<'a> {
+    time: &'a TimeBins,
+    per_metre: f64,
+    block: &'a Block,
+    pairs: &'a mut [[i128; 2]],
+}
+
+/// Lanes whose bins are found together, in a loop that vectorises.
+const CHUNK: usize = 32;
+
+impl Stage for Book<'_> {
     type Output = ();
 
     #[inline(always)]
     fn run(self) {
-        let live = if self.block.live < LANES {
-            self.block.live
-        } else {
-            LANES
-        };
-        let all = self.last as f64;
-        for lane in 0..live {
-            let scaled = self.block.path[lane] * self.per_metre;
-            let bin = index_below(scaled, all + 1.0);
-            let share = scaled - f64_of(bin);
-            let share = if share > 0.0 { share } else { 0.0 };
-            let share = if share < 1.0 { share } else { 1.0 };
-            self.bins[lane] = bin;
-            self.moments[lane] = quanta(self.block.lost[lane] * share);
+        let Self {
+            time,
+            per_metre,
+            block,
+            pairs,
+        } = self;
+        let last = time.bins();
+        let count = last as f64 + 1.0;
+        let mut bins = [0; CHUNK];
+        let mut moments = [0; CHUNK];
+        for first in (0..block.live).step_by(CHUNK) {
+            let end = usize::min(first + CHUNK, block.live);
+            let (path, lost) = (&block.path[first..end], &block.lost[first..end]);
+            let (bins, moments) = (&mut bins[..path.len()], &mut moments[..path.len()]);
+            for i in 0..path.len() {
+                let scaled = path[i] * per_metre;
+                let bin = index_below(scaled, count);
+                let share = scaled - f64_of(bin);
+                let share = if share > 0.0 { share } else { 0.0 };
+                let share = if share < 1.0 { share } else { 1.0 };
+                bins[i] = bin;
+                moments[i] = quanta(lost[i] * share);
+            }
+            let (arriving, leaving) = (&block.arriving[first..end], &block.leaving[first..end]);
+            for i in 0..path.len() {
+                let bin = bins[i] as usize;
+                if bin == last {
+                    // Later than the last edge moments have another unit.
+                    book(time, block, first + i, pairs);
+                    continue;
+                }
+                let pair = &mut pairs[bin];
+                pair[0] += wide(arriving[i] - leaving[i]);
+                pair[1] += wide(moments[i]);
+            }
         }
     }
 }

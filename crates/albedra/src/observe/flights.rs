@@ -2,7 +2,7 @@
 
 use super::Observable;
 use crate::engine::{Block, LANES, Level, Stage};
-use crate::math::{index_below, quanta, split_quanta};
+use crate::math::{LaneSum, index_below, quanta, wide};
 
 /// Equal bins of the histogram, from 0 to the body's diagonal.
 pub(crate) const HISTOGRAM_BINS: usize = 64;
@@ -18,6 +18,8 @@ pub(crate) struct FlightMoments {
     pub(crate) unit: f64,
     /// The body's diagonal, metres.
     pub(crate) diagonal: f64,
+    /// Whether the medium absorbs; where it does not, ∫ w ds is the first moment.
+    pub(crate) absorbing: bool,
 }
 
 impl FlightMoments {
@@ -51,12 +53,16 @@ impl Observable for FlightMoments {
             bins: &mut bins,
         });
         for (k, sum) in sums.into_iter().enumerate() {
-            let cell = if k < MOMENTS { k } else { Self::PATH };
-            cells[cell] += sum;
+            cells[Self::from_surface(k)] += sum;
         }
+        cells[Self::PATH] += if self.absorbing {
+            level.run(Dwell { rules: self, block })
+        } else {
+            sums[1]
+        };
         let histogram = &mut cells[Self::HISTOGRAM..Self::HISTOGRAM + HISTOGRAM_BINS];
-        for lane in 0..block.live {
-            histogram[bins[lane] as usize] += i128::from(block.departing[lane]);
+        for (bin, &quanta) in bins.iter().zip(&block.departing[..block.live]) {
+            histogram[*bin as usize] += wide(quanta);
         }
         // First flights from inside were counted above like the others; they move to their own cells.
         for &lane in &block.adrift {
@@ -81,7 +87,7 @@ struct Moments<'a> {
 }
 
 impl Stage for Moments<'_> {
-    type Output = [i128; MOMENTS + 1];
+    type Output = [i128; MOMENTS];
 
     #[inline(always)]
     fn run(self) -> Self::Output {
@@ -90,28 +96,40 @@ impl Stage for Moments<'_> {
         let per_metre = 1.0 / rules.unit;
         let bins_per_metre = HISTOGRAM_BINS as f64 / rules.diagonal;
         let (flight, weight) = (&block.flight[..live], &block.start_weight[..live]);
-        let (dwell, bins) = (&block.dwell[..live], &mut bins[..live]);
-        // High parts are below 2³¹ and low parts below 2³⁰, so that sums over a block's lanes fit in 64 bits.
-        let mut high = [0_i64; MOMENTS + 1];
-        let mut low = [0_i64; MOMENTS + 1];
+        let (departing, bins) = (&block.departing[..live], &mut bins[..live]);
+        let mut zeroth = LaneSum::default();
+        let mut higher = [LaneSum::default(); MOMENTS - 1];
         for i in 0..live {
             let length = flight[i] * per_metre;
+            zeroth.add_whole(departing[i]);
             let mut scored = weight[i];
-            for k in 0..MOMENTS {
-                let (h, l) = split_quanta(scored);
-                high[k] = high[k].wrapping_add(h);
-                low[k] = low[k].wrapping_add(l);
+            for sum in &mut higher {
                 scored *= length;
+                sum.add(scored);
             }
-            let (h, l) = split_quanta(dwell[i] * per_metre);
-            high[MOMENTS] = high[MOMENTS].wrapping_add(h);
-            low[MOMENTS] = low[MOMENTS].wrapping_add(l);
             bins[i] = index_below(flight[i] * bins_per_metre, HISTOGRAM_BINS as f64);
         }
-        let mut sums = [0; MOMENTS + 1];
-        for k in 0..=MOMENTS {
-            sums[k] = (i128::from(high[k]) << 30) + i128::from(low[k]);
+        let [first, second, third, fourth] = higher.map(|sum| sum.quanta(live));
+        [zeroth.quanta(0), first, second, third, fourth]
+    }
+}
+
+struct Dwell<'a> {
+    rules: &'a FlightMoments,
+    block: &'a Block,
+}
+
+impl Stage for Dwell<'_> {
+    type Output = i128;
+
+    #[inline(always)]
+    fn run(self) -> i128 {
+        let dwell = &self.block.dwell[..self.block.live];
+        let per_metre = 1.0 / self.rules.unit;
+        let mut sum = LaneSum::default();
+        for length in dwell {
+            sum.add(length * per_metre);
         }
-        sums
+        sum.quanta(dwell.len())
     }
 }

@@ -2,6 +2,7 @@
 
 use super::Observable;
 use crate::engine::{Block, Level};
+use crate::math::wide;
 
 /// For each row: incident energy, energy lost there, incident energy straight from the source.
 #[derive(Clone, Debug)]
@@ -30,12 +31,14 @@ impl Observable for FluxRows {
     }
 
     fn strike(&self, _: Level, block: &Block, cells: &mut [i128]) {
-        for lane in 0..block.live {
-            let row = block.row[lane] as usize;
-            let (arriving, leaving) = (block.arriving[lane], block.leaving[lane]);
-            let pair = &mut cells[3 * row..3 * row + 2];
-            pair[0] += i128::from(arriving);
-            pair[1] += i128::from(arriving - leaving);
+        let live = block.live;
+        let (rows, _) = cells.as_chunks_mut::<3>();
+        let (row, arriving) = (&block.row[..live], &block.arriving[..live]);
+        let leaving = &block.leaving[..live];
+        for i in 0..live {
+            let [incident, lost, _] = &mut rows[row[i] as usize];
+            *incident += wide(arriving[i]);
+            *lost += wide(arriving[i] - leaving[i]);
         }
         for &lane in &block.fresh {
             let lane = usize::from(lane);
