@@ -653,8 +653,8 @@ fn runs_with_bad_numbers() {
     says(&error, &["photons", "at least 1", "got 0"]);
     for (first, photons) in [
         (u64::MAX, 1),
-        (1 << 62, 1),
-        ((1 << 62) - 5, 6),
+        (1 << 61, 1),
+        ((1 << 61) - 5, 6),
         (0, u64::MAX),
     ] {
         let error = experiment.trace(photons).from(first).run().unwrap_err();
@@ -662,12 +662,12 @@ fn runs_with_bad_numbers() {
         says(
             &error,
             &[
-                "below 2^62",
+                "below 2^61",
                 &format!("{photons} photons from index {first}"),
             ],
         );
     }
-    assert!(experiment.trace(5).from((1 << 62) - 5).run().is_ok());
+    assert!(experiment.trace(5).from((1 << 61) - 5).run().is_ok());
     for threads in [0, 5000] {
         let error = experiment.trace(10).threads(threads).run().unwrap_err();
         assert_eq!(error, RunError::Threads { value: threads });

@@ -11,7 +11,10 @@ use crate::estimate::{MergeError, Totals};
 use crate::outcome::{Outcome, Target};
 
 /// First photon of a pilot run; photons of results have smaller indices.
-const PILOT: u64 = 1 << 62;
+///
+/// A photon takes four places in the sequence of 2⁶⁴ that generators are seeded from, so that photon 2⁶² would have the
+/// generator of photon 0.
+const PILOT: u64 = 1 << 61;
 
 /// Photons of a pilot run.
 const PILOT_PHOTONS: u64 = 12_800;
@@ -273,7 +276,7 @@ pub enum RunError {
         /// What was given.
         value: u64,
     },
-    /// Photons with indices from 2⁶² on, which are kept for pilot runs.
+    /// Photons with indices from 2⁶¹ on, which are kept for pilot runs.
     Indices {
         /// Index of the first photon.
         first: u64,
@@ -316,7 +319,7 @@ impl fmt::Display for RunError {
             Self::Photons { value } => write!(f, "photons must number at least 1, got {value}"),
             Self::Indices { first, photons } => write!(
                 f,
-                "indices of photons must stay below 2^62, got {photons} photons from index {first} on"
+                "indices of photons must stay below 2^61, got {photons} photons from index {first} on"
             ),
             Self::Threads { value } => write!(f, "threads must number from 1 to 4096, got {value}"),
             Self::NoThreads { reason } => write!(f, "the system gave no threads: {reason}"),
@@ -351,5 +354,26 @@ impl std::error::Error for RunError {
             Self::Merge(error) => Some(error),
             _ => None,
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::engine::Streams;
+
+    #[test]
+    fn pilot_photons_have_generators_of_their_own() {
+        let mut streams = Streams::new();
+        let mut first = |photon: u64| {
+            streams.seed(0, 7, photon);
+            streams.lane(0).unit()
+        };
+        for photon in [0, 1, PILOT_PHOTONS - 1] {
+            assert_ne!(first(photon), first(PILOT + photon));
+        }
+        // From here on they would repeat, so that no pilot may reach it.
+        assert_eq!(first(0), first(1 << 62));
+        const { assert!(PILOT + PILOT_PHOTONS <= 1 << 62) };
     }
 }
