@@ -600,6 +600,48 @@ fn sources_with_bad_numbers() {
     directions(Source::wall("x-").parallel([0.0, 1.0, 0.0]), "inward");
     directions(Source::walls().parallel([1.0, 0.0, 0.0]), "inward");
     directions(Source::volume().cone(0.3), "axis");
+    // Light about any other axis would leave through the wall that it starts on.
+    directions(Source::wall("x-").cosine_about([-1.0, 0.0, 0.0]), "normals");
+    directions(Source::walls().cosine_about([0.0, 0.0, 1.0]), "normals");
+}
+
+#[test]
+fn sources_whose_points_no_trial_would_find() {
+    let almost_all = Region::rectangle((0.0, 0.0), (1.0, 1.0 - 1e-6));
+    let enclosure = cube().paint("all", "x+", almost_all, white()).unwrap();
+    let error = refused(&Experiment::new(&enclosure, Source::wall("x+")));
+    assert!(matches!(error, ExperimentError::Source { source: 0, .. }));
+    says(&error, &["source 0", "1e-4", "to see"]);
+    for source in [Source::wall("all"), Source::walls()] {
+        assert_eq!(Experiment::new(&enclosure, source).check(), Ok(()));
+    }
+    // A bent strip around a large square.
+    let thin = 1e-6;
+    let outline = [
+        (0.0, 0.0),
+        (1.0, 0.0),
+        (1.0, thin),
+        (thin, thin),
+        (thin, 1.0),
+        (0.0, 1.0),
+    ];
+    let strip = Enclosure::extruded(&outline, 1.0).unwrap().coated(white());
+    let error = refused(&Experiment::new(&strip, Source::volume()));
+    assert!(matches!(error, ExperimentError::Source { source: 0, .. }));
+    says(&error, &["source 0", "1e-4", "bounding box"]);
+    assert_eq!(Experiment::new(&strip, Source::walls()).check(), Ok(()));
+}
+
+#[test]
+fn texts_without_a_source() {
+    let text = Experiment::new(&cube(), Source::volume()).to_text();
+    let (before, after) = text.split_once("[[experiment.sources]]").unwrap();
+    let after = &after[after.find("[enclosure").unwrap()..];
+    let text = format!("{before}sources = []\n{after}");
+    let experiment = Experiment::from_text(&text, None).unwrap();
+    let error = refused(&experiment);
+    assert_eq!(error, ExperimentError::NoSource);
+    says(&error, &["sources", "at least 1", "got 0"]);
 }
 
 #[test]

@@ -34,6 +34,8 @@ pub enum ExperimentError {
         /// Names like it.
         near: Near,
     },
+    /// No source at all, as only a text can have it.
+    NoSource,
     /// A source starts outside the enclosure.
     SourceOutside {
         /// Its place in the list of sources.
@@ -100,6 +102,7 @@ impl fmt::Display for ExperimentError {
                 write!(f, "a map needs a wall, but none is named \"{name}\"{near}")
             }
             Self::UnknownOutput { name, near } => write!(f, "no output is named \"{name}\"{near}"),
+            Self::NoSource => write!(f, "sources must number at least 1, got 0"),
             Self::SourceOutside {
                 source,
                 position: [x, y, z],

@@ -47,6 +47,9 @@ pub(super) fn emitter(
         surfaces,
     };
     let sources = &experiment.settings.sources;
+    if sources.is_empty() {
+        return Err(ExperimentError::NoSource);
+    }
     let mut parts = Vec::new();
     for (index, source) in sources.iter().enumerate() {
         if !(source.flux > 0.0 && source.flux < 1e300) {
@@ -91,6 +94,12 @@ impl Stage<'_> {
                         source: index,
                         required,
                         value: half_angle,
+                    });
+                }
+                if axis.is_some() && wall {
+                    return Err(ExperimentError::SourceDirection {
+                        source: index,
+                        required: "a cone of light from walls must have their normals as axes",
                     });
                 }
                 if axis.is_none() && !wall {
@@ -152,6 +161,7 @@ impl Stage<'_> {
                         near,
                     });
                 };
+                self.in_sight(index, row)?;
                 self.row_site(index, row, aim)
             }
             Place::Walls => {
@@ -162,8 +172,30 @@ impl Stage<'_> {
                 let areas: Vec<f64> = pieces.iter().map(|piece| piece.area).collect();
                 Ok(Box::new(AnyWall::new(&areas, sites)))
             }
-            Place::Volume => Ok(Box::new(VolumeSite::new(&self.experiment.enclosure.solid))),
+            Place::Volume => {
+                let solid = &self.experiment.enclosure.solid;
+                let [lower, upper] = solid.bounds;
+                let sides = [0, 1, 2].map(|axis| upper[axis] - lower[axis]);
+                let share = solid.volume / (sides[0] * sides[1] * sides[2]);
+                // Points in a convex body are not found by trial.
+                if solid.convex.is_none() {
+                    let required = "the volume must fill at least 1e-4 of its bounding box";
+                    large_enough(index, share, required)?;
+                }
+                Ok(Box::new(VolumeSite::new(solid)))
+            }
         }
+    }
+
+    /// Refuses a wall or region of which so little can be seen that trial finds no point of it.
+    fn in_sight(&self, index: usize, row: usize) -> Result<(), ExperimentError> {
+        let enclosure = &self.experiment.enclosure;
+        let piece = &enclosure.pieces()[row];
+        let whole = piece.patch.map_or(enclosure.solid.walls[piece.wall].area, |patch| {
+            enclosure.patches[patch].shape.area()
+        });
+        let required = "later regions must leave at least 1e-4 of the wall or region to see";
+        large_enough(index, piece.area / whole, required)
     }
 
     fn row_site(
@@ -174,8 +206,7 @@ impl Stage<'_> {
     ) -> Result<Box<dyn Site>, ExperimentError> {
         let enclosure = &self.experiment.enclosure;
         let piece = &enclosure.pieces()[row];
-        let solid: &Solid = &enclosure.solid;
-        let site = WallSite::new(solid, self.ground, self.surfaces, piece.wall, row as u64);
+        let site = WallSite::new(&enclosure.solid, self.ground, self.surfaces, piece.wall);
         if let Aim::Parallel(axis) = aim {
             let outward = site.surfaces().any(|surface| {
                 let [a, b, c, _] = self.ground.planes[surface];
@@ -209,6 +240,25 @@ impl Stage<'_> {
             Some(&position) => Err(ExperimentError::SourceOutside { source, position }),
             None => Ok(()),
         }
+    }
+}
+
+/// The least share of trials that must find a point; the sites' tries allow for it.
+const LEAST_SHARE: f64 = 1e-4;
+
+fn large_enough(
+    source: usize,
+    share: f64,
+    required: &'static str,
+) -> Result<(), ExperimentError> {
+    if share >= LEAST_SHARE {
+        Ok(())
+    } else {
+        Err(ExperimentError::Source {
+            source,
+            required,
+            value: share,
+        })
     }
 }
 

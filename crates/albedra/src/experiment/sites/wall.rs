@@ -24,13 +24,7 @@ struct Triangle {
 }
 
 impl WallSite {
-    pub(super) fn new(
-        solid: &Solid,
-        ground: &Ground,
-        surfaces: &Surfaces,
-        wall: usize,
-        _row: u64,
-    ) -> Self {
+    pub(super) fn new(solid: &Solid, ground: &Ground, surfaces: &Surfaces, wall: usize) -> Self {
         let mut triangles = Vec::new();
         let mut shares = Vec::new();
         let mut area = 0.0;
