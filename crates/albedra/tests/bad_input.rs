@@ -3,7 +3,7 @@
 use albedra::{
     Coating, CoatingError, Enclosure, EnclosureError, Experiment, ExperimentError, LoadError,
     Medium, MediumError, Mesh, MeshFormat, Outcome, OutlineError, Problem, Region, RegionError,
-    RunError, SolidError, Source, TimeGrid, TimeGridError, Unit,
+    RunError, SolidError, Source, TimeGrid, TimeGridError, Totals, Unit,
 };
 
 fn white() -> Coating {
@@ -942,4 +942,28 @@ fn totals_of_another_experiment_are_refused() {
         .run()
         .unwrap_err();
     assert!(matches!(error, RunError::Merge(_)));
+}
+
+#[test]
+fn numbers_without_sense_do_no_harm() {
+    let experiment = Experiment::new(&cube(), Source::volume()).memory(u64::MAX);
+    let outcome = experiment.trace(200).run().unwrap();
+    assert_eq!(
+        Outcome::from_bytes(&outcome.to_bytes()).as_ref(),
+        Ok(&outcome)
+    );
+    for power in [0, 5, usize::MAX] {
+        assert!(outcome.flight_moment(power).value.is_nan());
+        assert!(outcome.first_flight_moment(power).value.is_nan());
+    }
+    // Totals that no run gives.
+    let totals = outcome.totals();
+    let groups = vec![[i128::MAX / 64; 64]; totals.groups().len()];
+    let (history, outputs, seed) = (totals.history(), totals.outputs(), totals.seed());
+    let (photons, counters) = (totals.photons().clone(), totals.counters());
+    let totals = Totals::from_parts(history, outputs, seed, photons, groups, counters);
+    let wild = Outcome::from_parts(&experiment, totals).unwrap();
+    assert!(!wild.ledger().closes() && !wild.to_string().is_empty());
+    assert!(wild.decay().energy[0].is_nan());
+    assert!(wild.decay_time(Some((0.0, 1.0))).is_none());
 }

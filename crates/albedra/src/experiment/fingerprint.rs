@@ -3,7 +3,6 @@
 use super::{Experiment, Layout};
 use crate::engine::{Retirement, STREAM_VERSION};
 use crate::estimate::{Fingerprint, FingerprintBuilder};
-use crate::source::Source;
 
 /// Fingerprint of all that decides what photons do: shape, coatings, sources, medium, roulette and the stream's version.
 pub(super) fn history(experiment: &Experiment, retirement: &Retirement) -> Fingerprint {
@@ -28,10 +27,7 @@ pub(super) fn history(experiment: &Experiment, retirement: &Retirement) -> Finge
     // Names take no part in histories, but a source may be named by them; the text form holds all the rest.
     builder.text(&text_of(&experiment.enclosure.to_form()));
     for source in &experiment.settings.sources {
-        builder.text(&text_of(&Source {
-            flux: source.flux,
-            ..source.clone()
-        }));
+        builder.text(&text_of(source));
     }
     builder
         .f64(retirement.decay_per_metre)

@@ -133,10 +133,11 @@ impl Experiment {
         self
     }
 
-    /// Sets the memory in bytes that outputs may take; 1 GiB unless told otherwise.
+    /// Sets the memory in bytes that outputs may take; 1 GiB unless told otherwise, and at most 2⁶³ − 1.
     #[must_use]
     pub fn memory(mut self, bytes: u64) -> Self {
-        self.settings.memory = bytes;
+        // The text form has no larger integers.
+        self.settings.memory = bytes.min(i64::MAX.cast_unsigned());
         self
     }
 

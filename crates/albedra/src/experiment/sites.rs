@@ -191,9 +191,11 @@ impl Stage<'_> {
     fn in_sight(&self, index: usize, row: usize) -> Result<(), ExperimentError> {
         let enclosure = &self.experiment.enclosure;
         let piece = &enclosure.pieces()[row];
-        let whole = piece.patch.map_or(enclosure.solid.walls[piece.wall].area, |patch| {
-            enclosure.patches[patch].shape.area()
-        });
+        let whole = piece
+            .patch
+            .map_or(enclosure.solid.walls[piece.wall].area, |patch| {
+                enclosure.patches[patch].shape.area()
+            });
         let required = "later regions must leave at least 1e-4 of the wall or region to see";
         large_enough(index, piece.area / whole, required)
     }
@@ -246,11 +248,7 @@ impl Stage<'_> {
 /// The least share of trials that must find a point; the sites' tries allow for it.
 const LEAST_SHARE: f64 = 1e-4;
 
-fn large_enough(
-    source: usize,
-    share: f64,
-    required: &'static str,
-) -> Result<(), ExperimentError> {
+fn large_enough(source: usize, share: f64, required: &'static str) -> Result<(), ExperimentError> {
     if share >= LEAST_SHARE {
         Ok(())
     } else {

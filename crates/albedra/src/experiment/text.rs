@@ -138,4 +138,11 @@ impl fmt::Display for TextError {
     }
 }
 
-impl std::error::Error for TextError {}
+impl std::error::Error for TextError {
+    fn source(&self) -> Option<&(dyn std::error::Error + 'static)> {
+        match self {
+            Self::Enclosure(error) => Some(error),
+            Self::Form { .. } | Self::Version { .. } => None,
+        }
+    }
+}

@@ -82,10 +82,11 @@ impl Outcome {
         let mut later = 0_i128;
         let mut energy = vec![f64::NAN; bins + 1];
         for bin in (0..=bins).rev() {
-            let Some(lost) = sums.quanta(layout.decay_at + 2 * bin) else {
+            let lost = sums.quanta(layout.decay_at + 2 * bin);
+            let Some(sum) = lost.and_then(|lost| later.checked_add(lost)) else {
                 return energy;
             };
-            later += lost;
+            later = sum;
             energy[bin] = layout.watts * per_photon(sums, later);
         }
         energy

@@ -16,8 +16,8 @@ pub struct DecayTime {
     pub first_half: Estimate,
     /// Decay time in s from the window's second half.
     pub second_half: Estimate,
-    /// Whether the halves differ by more than three standard uncertainties and 1 %: then one decay time does not describe
-    /// the curve in this window.
+    /// Whether the halves differ by more than three standard uncertainties and 1 %, or cannot be compared: then one decay
+    /// time does not describe the curve in this window.
     pub not_one_exponential: bool,
 }
 
@@ -83,7 +83,9 @@ impl Outcome {
         let second_half = jackknife.estimate(|sums| self.fit(sums, &late));
         let difference = jackknife.estimate(|sums| self.fit(sums, &late) - self.fit(sums, &early));
         let apart = difference.value.abs();
-        let not_one_exponential = apart > 3.0 * difference.u && apart > 0.01 * estimate.value.abs();
+        // Halves that cannot be compared raise the flag too.
+        let alike = apart <= 3.0 * difference.u || apart <= 0.01 * estimate.value.abs();
+        let not_one_exponential = !alike;
         let window = (decay.edges[first], decay.edges[last]);
         Some(DecayTime {
             estimate,

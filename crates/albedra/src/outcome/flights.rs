@@ -28,23 +28,15 @@ impl Outcome {
     ///
     /// NaN for other powers.
     pub fn flight_moment(&self, power: usize) -> Estimate {
-        self.moment(
-            power,
-            FlightMoments::from_surface(power),
-            FlightMoments::from_surface(0),
-        )
+        self.moment(power, FlightMoments::from_surface)
     }
 
     /// The same of first flights that start inside, as from a point, a beam or the volume; NaN if there are none.
     pub fn first_flight_moment(&self, power: usize) -> Estimate {
-        self.moment(
-            power,
-            FlightMoments::from_inside(power),
-            FlightMoments::from_inside(0),
-        )
+        self.moment(power, FlightMoments::from_inside)
     }
 
-    fn moment(&self, power: usize, above: usize, below: usize) -> Estimate {
+    fn moment(&self, power: usize, cell: fn(usize) -> usize) -> Estimate {
         if !(1..=4).contains(&power) {
             return Estimate::new(f64::NAN, f64::INFINITY, 0.0);
         }
@@ -57,7 +49,7 @@ impl Outcome {
             unit * unit * (unit * unit),
         ][power];
         self.jackknife()
-            .estimate(|sums| scale * sums.sum(at + above) / sums.sum(at + below))
+            .estimate(|sums| scale * sums.sum(at + cell(power)) / sums.sum(at + cell(0)))
     }
 
     /// Histogram of the lengths of flights that start on a surface.

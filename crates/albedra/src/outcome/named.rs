@@ -208,12 +208,10 @@ impl Named<'_> {
             }
             RowKind::Reflected => {
                 let quanta = |cell| sums.quanta(layout.rows_at + cell);
-                match (quanta(FluxRows::incident(row)), quanta(FluxRows::lost(row))) {
-                    (Some(incident), Some(lost)) => {
-                        layout.watts * per_photon(sums, incident - lost)
-                    }
-                    _ => f64::NAN,
-                }
+                let reflected = quanta(FluxRows::incident(row))
+                    .zip(quanta(FluxRows::lost(row)))
+                    .and_then(|(incident, lost)| incident.checked_sub(lost));
+                reflected.map_or(f64::NAN, |quanta| layout.watts * per_photon(sums, quanta))
             }
         }
     }

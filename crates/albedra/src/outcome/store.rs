@@ -109,4 +109,13 @@ impl fmt::Display for LoadError {
     }
 }
 
-impl std::error::Error for LoadError {}
+impl std::error::Error for LoadError {
+    fn source(&self) -> Option<&(dyn std::error::Error + 'static)> {
+        match self {
+            Self::Totals(error) => Some(error),
+            Self::Text(error) => Some(error),
+            Self::Experiment(error) => Some(error),
+            Self::NotAnOutcome | Self::Foreign => None,
+        }
+    }
+}
