@@ -431,6 +431,28 @@ fn names_that_are_taken_or_empty() {
 }
 
 #[test]
+fn walls_of_a_mesh_without_names_or_facets() {
+    let made = |walls: &[&str], last: u32| {
+        let mut mesh = cube().mesh().clone();
+        mesh.walls = walls.iter().map(|&name| name.to_owned()).collect();
+        mesh.facet_walls = vec![0, 0, 0, 0, 0, last];
+        Enclosure::from_mesh(mesh)
+    };
+    assert!(made(&["a", "b"], 1).is_ok());
+    let named = |name: &str| Err(EnclosureError::Name { name: name.into() });
+    assert_eq!(made(&["a", "a"], 1), named("a"));
+    assert_eq!(made(&["a", ""], 1), named(""));
+    let error = made(&["a", "unused"], 0).unwrap_err();
+    assert_eq!(
+        error,
+        EnclosureError::NoFacets {
+            wall: "unused".to_owned()
+        }
+    );
+    says(&error, &["\"unused\"", "facets"]);
+}
+
+#[test]
 fn regions_on_walls_that_are_not_planar() {
     let sides = "f 1 2 6 5\nf 2 3 7 6\nf 3 4 8 7\nf 4 1 5 8\n";
     let text = format!("{BOX}g ends\nf 1 4 3 2\nf 5 6 7 8\ng sides\n{sides}");

@@ -34,6 +34,11 @@ pub enum EnclosureError {
         /// Names of walls like it.
         near: Near,
     },
+    /// A wall of the mesh has no facets.
+    NoFacets {
+        /// The wall.
+        wall: String,
+    },
     /// The name is empty or taken, by a wall or by another region.
     Name {
         /// What was given.
@@ -76,7 +81,12 @@ impl fmt::Display for EnclosureError {
                 write!(f, "no wall, region or opening is named \"{name}\"{near}")
             }
             Self::UnknownWall { name, near } => write!(f, "no wall is named \"{name}\"{near}"),
-            Self::Name { name } if name.is_empty() => write!(f, "a region must have a name"),
+            Self::NoFacets { wall } => {
+                write!(f, "wall \"{wall}\" must have facets, but no facet names it")
+            }
+            Self::Name { name } if name.is_empty() => {
+                write!(f, "a wall or region must have a name")
+            }
             Self::Name { name } => write!(f, "name \"{name}\" must be new, but is taken already"),
             Self::NotPlanar { wall } => write!(
                 f,

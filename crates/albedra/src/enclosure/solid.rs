@@ -1,5 +1,7 @@
 //! A sound closed body and what is derived from its shape once.
 
+use std::collections::BTreeSet;
+
 use serde::{Deserialize, Serialize};
 
 use super::EnclosureError;
@@ -99,6 +101,7 @@ impl Solid {
         }
         let sides = [0, 1, 2].map(|axis| bounds[1][axis] - bounds[0][axis]);
         let diagonal = (sides[0] * sides[0] + sides[1] * sides[1] + sides[2] * sides[2]).sqrt();
+        check_walls(&mesh, &areas)?;
         let planes = geometry::planar_walls(&mesh);
         let walls = areas
             .into_iter()
@@ -164,4 +167,18 @@ impl Solid {
             .collect();
         Hierarchy::new(&Triangles { vertices, corners })
     }
+}
+
+/// Every wall must have a name of its own and facets, or its numbers could not be asked for or would mean nothing.
+fn check_walls(mesh: &Mesh, areas: &[f64]) -> Result<(), EnclosureError> {
+    let mut names = BTreeSet::new();
+    for (name, &area) in mesh.walls.iter().zip(areas) {
+        if name.is_empty() || !names.insert(name) {
+            return Err(EnclosureError::Name { name: name.clone() });
+        }
+        if !(area > 0.0) {
+            return Err(EnclosureError::NoFacets { wall: name.clone() });
+        }
+    }
+    Ok(())
 }
