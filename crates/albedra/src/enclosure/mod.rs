@@ -53,6 +53,15 @@ pub struct Enclosure {
 impl Enclosure {
     /// A box of this size in m, centred on the origin, with walls `x-`, `x+`, `y-`, `y+`, `z-`, `z+`.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// let chamber = albedra::Enclosure::cuboid([1.2, 0.8, 0.5])?;
+    /// assert!((chamber.volume() - 0.48).abs() < 1e-15);
+    /// assert!(albedra::Enclosure::cuboid([1.2, 0.8, -0.5]).is_err());
+    /// # Ok::<(), albedra::EnclosureError>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If an edge is out of range.
@@ -62,6 +71,15 @@ impl Enclosure {
 
     /// A regular prism about the z axis, centred on the origin, with walls `side 1` …, `bottom`, `top`; `radius` is that of
     /// the circle through its vertices in m, the first of which lies on +x.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// let pipe = albedra::Enclosure::prism(6, 0.01, 0.3)?;
+    /// assert_eq!(pipe.walls().len(), 8);
+    /// assert_eq!(pipe.walls()[7].name, "top");
+    /// # Ok::<(), albedra::EnclosureError>(())
+    /// ```
     ///
     /// # Errors
     ///
@@ -80,6 +98,15 @@ impl Enclosure {
     /// A body of constant cross-section: corners (x, y) in m, from z = −height/2 to height/2, with walls `side 1` … counted
     /// counter-clockwise from the first corner, `bottom`, `top`. The outline need not be convex.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// let corners = [(0.0, 0.0), (2.0, 0.0), (2.0, 1.0), (1.0, 1.0), (1.0, 2.0), (0.0, 2.0)];
+    /// let l_shaped = albedra::Enclosure::extruded(&corners, 0.5)?;
+    /// assert!((l_shaped.volume() - 1.5).abs() < 1e-15);
+    /// # Ok::<(), albedra::EnclosureError>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If the outline crosses itself or a number is out of range.
@@ -94,6 +121,23 @@ impl Enclosure {
     }
 
     /// A body bounded by a mesh.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Enclosure, EnclosureError, Mesh};
+    ///
+    /// let mut mesh = Mesh::default();
+    /// let wall = mesh.wall("all");
+    /// mesh.vertices = vec![[0., 0., 0.].into(), [1., 0., 0.].into(), [0., 1., 0.].into(), [0., 0., 1.].into()];
+    /// for corners in [[0, 2, 1], [0, 1, 3], [1, 2, 3]] {
+    ///     mesh.push_facet(&corners, wall);
+    /// }
+    /// assert!(matches!(Enclosure::from_mesh(mesh.clone()), Err(EnclosureError::Unsound(_))));
+    /// mesh.push_facet(&[2, 0, 3], wall);
+    /// assert_eq!(Enclosure::from_mesh(mesh)?.volume(), 1.0 / 6.0);
+    /// # Ok::<(), EnclosureError>(())
+    /// ```
     ///
     /// # Errors
     ///
@@ -124,6 +168,18 @@ impl Enclosure {
     }
 
     /// Gives all walls a coating; regions and openings stay as they are.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure};
+    ///
+    /// let white = Coating::lambertian(0.97)?;
+    /// let chamber = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(white);
+    /// assert_eq!(chamber.walls()[0].coating, Some(white));
+    /// assert!(chamber.walls()[5].is_opening);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     #[must_use]
     pub fn coated(mut self, coating: Coating) -> Self {
         for finish in &mut self.finishes {
@@ -136,6 +192,17 @@ impl Enclosure {
 
     /// Gives a wall or a region a coating.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure};
+    ///
+    /// let chamber = Enclosure::cuboid([1.0, 1.0, 1.0])?.with_coating("z-", Coating::absorber())?;
+    /// assert_eq!(chamber.walls()[4].coating, Some(Coating::absorber()));
+    /// assert!(chamber.with_coating("z", Coating::absorber()).is_err());
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If there is none of this name.
@@ -145,6 +212,14 @@ impl Enclosure {
 
     /// Makes a whole wall an opening under its own name.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// let box_ = albedra::Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?;
+    /// assert!(box_.walls()[5].is_opening);
+    /// # Ok::<(), albedra::EnclosureError>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If there is no such wall.
@@ -153,6 +228,16 @@ impl Enclosure {
     }
 
     /// Fills the enclosure with a medium.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Enclosure, Medium};
+    ///
+    /// let cell = Enclosure::cuboid([0.1, 0.1, 1.0])?.with_medium(Medium::new(1.000_3, 0.02)?);
+    /// assert_eq!(cell.medium().absorption(), 0.02);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     #[must_use]
     pub fn with_medium(mut self, medium: Medium) -> Self {
         self.medium = medium;

@@ -40,6 +40,20 @@ pub(crate) struct Patch {
 impl Enclosure {
     /// Paints a region of a planar wall with another coating, under a name of its own. Later paint covers earlier.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure, Region};
+    ///
+    /// let chamber = Enclosure::cuboid([1.0, 1.0, 1.0])?
+    ///     .coated(Coating::lambertian(0.97)?)
+    ///     .paint("sample", "y+", Region::rectangle((0.0, 0.0), (0.1, 0.1)), Coating::lambertian(0.6)?)?;
+    /// // Rows are disjoint.
+    /// let area: f64 = chamber.rows().iter().map(|(_, area)| area).sum();
+    /// assert!((area - 6.0).abs() < 1e-12);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If there is no such wall, it is not planar, the name is taken, the region leaves the wall, or nothing would be left to
@@ -55,6 +69,19 @@ impl Enclosure {
     }
 
     /// Opens a region of a planar wall, under a name of its own: light that meets it has escaped.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Enclosure, EnclosureError, Region};
+    ///
+    /// let chamber = Enclosure::cuboid([1.0, 1.0, 1.0])?
+    ///     .with_opening("detector", "x+", Region::disk((0.0, 0.0), 0.05))?;
+    /// assert_eq!(chamber.walls()[1].regions, ["detector"]);
+    /// let too_large = chamber.with_opening("port", "x-", Region::disk((0.0, 0.0), 0.6));
+    /// assert!(matches!(too_large, Err(EnclosureError::Region { .. })));
+    /// # Ok::<(), EnclosureError>(())
+    /// ```
     ///
     /// # Errors
     ///

@@ -96,6 +96,18 @@ impl<'a> Trace<'a> {
     }
 
     /// Continues an outcome: its seed is taken, the photons that follow its last one are traced, and both are merged.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::lambertian(0.8)?);
+    /// let experiment = Experiment::new(&cube, Source::volume());
+    /// let before = experiment.trace(600).seed(7).run()?;
+    /// let all = experiment.trace(400).continuing(&before).run()?;
+    /// assert_eq!(all, experiment.trace(1000).seed(7).run()?);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn continuing(mut self, outcome: &'a Outcome) -> Self {
         self.seed = outcome.totals().seed();
         self.first = outcome
@@ -110,6 +122,17 @@ impl<'a> Trace<'a> {
 
     /// Wants a relative standard uncertainty of an output: a pilot run on other photons, which is thrown away, decides how
     /// many photons to trace, at most the number given. The outcome equals that of tracing this number.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::lambertian(0.5)?);
+    /// let experiment = Experiment::new(&cube, Source::volume());
+    /// let outcome = experiment.trace(1_000_000).target("x-.incident", 0.01).run()?;
+    /// assert!(outcome.target().is_some_and(|target| target.reached < 0.02));
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn target(mut self, output: impl Into<String>, relative: f64) -> Self {
         self.target = Some((output.into(), relative));
         self
@@ -122,6 +145,19 @@ impl<'a> Trace<'a> {
     }
 
     /// Has a function called about twenty times a second, on this thread, that may stop the run with `Break`.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use std::ops::ControlFlow;
+    ///
+    /// # use albedra::{Coating, Enclosure, Experiment, RunError, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::lambertian(0.8)?);
+    /// let experiment = Experiment::new(&cube, Source::volume());
+    /// let stopped = experiment.trace(1 << 50).watch(|_| ControlFlow::Break(())).run();
+    /// assert!(matches!(stopped, Err(RunError::Cancelled { .. })));
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn watch(mut self, watch: impl FnMut(&Progress) -> ControlFlow<()> + 'a) -> Self {
         self.watch = Some(Box::new(watch));
         self

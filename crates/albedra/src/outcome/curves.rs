@@ -34,6 +34,18 @@ pub struct Curve {
 
 impl Outcome {
     /// Energy inside after a short pulse that carries as many joules as the sources have watts.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let decay = outcome.decay();
+    /// assert_eq!(decay.edges.len(), 201);
+    /// assert_eq!((decay.energy[0], decay.u[0]), (1.0, 0.0));
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn decay(&self) -> Decay {
         let all = self
             .jackknife()
@@ -48,11 +60,36 @@ impl Outcome {
     }
 
     /// Energy inside after a steady lamp goes off.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let curve = outcome.switch_off();
+    /// let stored = outcome.stored_energy().value;
+    /// assert!((curve.energy[0] / stored - 1.0).abs() < 1e-9);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn switch_off(&self) -> Curve {
         self.curve(|sums| self.integral_from_edges(sums))
     }
 
     /// Energy inside after a lamp comes on and stays steady.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let (on, off) = (outcome.switch_on(), outcome.switch_off());
+    /// assert_eq!(on.energy[0], 0.0);
+    /// // What the one has gained the other has lost.
+    /// assert!(((on.energy[50] + off.energy[50]) / off.energy[0] - 1.0).abs() < 1e-9);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn switch_on(&self) -> Curve {
         self.curve(|sums| {
             let mut inside = 0.0;

@@ -35,6 +35,20 @@ impl Outcome {
     /// correlated, and this takes account of it.
     ///
     /// Nothing, if there are fewer than five edges with energy in the window.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(20_000).seed(7).run()?;
+    /// if let Some(time) = outcome.decay_time(None) {
+    ///     let expected = outcome.facts().expected_decay_time;
+    ///     assert!((time.estimate.value / expected - 1.0).abs() < 0.5);
+    /// }
+    /// assert!(outcome.decay_time(Some((1.0, 2.0))).is_none());
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn decay_time(&self, window: Option<(f64, f64)>) -> Option<DecayTime> {
         let decay = self.decay();
         let good = |k: usize| decay.energy[k] > 0.0 && decay.u[k] < 0.05 * decay.energy[k];

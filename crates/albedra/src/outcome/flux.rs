@@ -25,6 +25,18 @@ pub struct Flux {
 impl Outcome {
     /// Flux of the wall, region or opening of this name.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let lid = outcome.flux("z+")?;
+    /// assert!(lid.incident.value > 0.0 && lid.escaped.value == lid.incident.value);
+    /// assert!(outcome.flux("lid").is_err());
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If there is none.
@@ -52,6 +64,18 @@ impl Outcome {
     }
 
     /// Mean irradiance of the wall, region or opening of this name in W/m² (for a pulse: radiant exposure in J/m²).
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let floor = outcome.irradiance("z-")?;
+    /// // The floor has 1 m².
+    /// assert_eq!(floor.value, outcome.flux("z-")?.incident.value);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     ///
     /// # Errors
     ///

@@ -38,6 +38,19 @@ impl Ledger {
 
 impl Outcome {
     /// Where all the emitted energy went.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let ledger = outcome.ledger();
+    /// assert!(ledger.closes());
+    /// let sum = ledger.absorbed.value + ledger.escaped.value + ledger.roulette.value;
+    /// assert!((sum - ledger.emitted).abs() < 1e-12);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn ledger(&self) -> Ledger {
         let jackknife = self.jackknife();
         let of = |kind| self.layout.of_ledger(kind).estimate(&jackknife);

@@ -27,6 +27,19 @@ pub struct Map {
 impl Outcome {
     /// The map of a wall.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).map("z-", (4, 3)).trace(2_000).seed(7).run()?;
+    /// let map = outcome.map("z-")?;
+    /// assert_eq!(map.irradiance.len(), 12);
+    /// let watts: f64 = map.irradiance.iter().zip(&map.area).map(|(e, area)| e * area).sum();
+    /// assert!((watts - outcome.flux("z-")?.incident.value).abs() < 1e-12);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If no map of it was asked for.

@@ -132,6 +132,20 @@ impl Outcome {
 
     /// Adds an outcome of other photons of the same experiment and seed.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::lambertian(0.8)?);
+    /// let experiment = Experiment::new(&cube, Source::volume());
+    /// let mut first = experiment.trace(600).run()?;
+    /// let second = experiment.trace(400).from(600).run()?;
+    /// first.merge(&second)?;
+    /// assert_eq!(first, experiment.trace(1000).run()?);
+    /// assert!(first.merge(&second).is_err());
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If the other is of another experiment or seed, or has a photon that this one has. Then nothing is changed.
@@ -176,6 +190,17 @@ impl Outcome {
 
     /// The output of this name, such as `"detector.incident"`, `"ledger.absorbed"` or `"mean_free_path"`.
     ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// assert_eq!(outcome.output("z-.incident")?, outcome.flux("z-")?.incident);
+    /// assert!(outcome.output("z-.incidence").is_err());
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
+    ///
     /// # Errors
     ///
     /// If there is no such output.
@@ -185,6 +210,18 @@ impl Outcome {
     }
 
     /// Ratio of two outputs; their covariance is taken into account.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// let share = outcome.ratio("z-.absorbed", "z-.incident")?;
+    /// // Both come from the same photons, so that their quotient is certain.
+    /// assert!((share.value - 0.2).abs() < 1e-12 && share.u < 1e-12);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     ///
     /// # Errors
     ///

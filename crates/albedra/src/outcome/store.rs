@@ -26,6 +26,16 @@ impl Outcome {
     }
 
     /// The outcome as bytes that carry their own check.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// # use albedra::{Coating, Enclosure, Experiment, Source};
+    /// # let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.opened("z+")?.coated(Coating::lambertian(0.8)?);
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(2_000).seed(7).run()?;
+    /// assert_eq!(albedra::Outcome::from_bytes(&outcome.to_bytes())?, outcome);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn to_bytes(&self) -> Vec<u8> {
         let text = self.experiment.to_text();
         let mesh = self

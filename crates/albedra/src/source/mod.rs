@@ -95,6 +95,16 @@ impl Source {
     }
 
     /// Light from a point (metres), isotropic.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Source, Spread};
+    ///
+    /// let lamp = Source::point([0.2, 0.0, 0.0]);
+    /// assert_eq!(lamp.spread(), Spread::Isotropic);
+    /// assert_eq!(lamp.watts(), 1.0);
+    /// ```
     pub fn point(position: impl Into<DVec3>) -> Self {
         Self::new(
             Place::Point {
@@ -105,6 +115,15 @@ impl Source {
     }
 
     /// A pencil of light from a position (metres) along a direction of any length.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Source, SourcePlace};
+    ///
+    /// let laser = Source::beam([0.0, 0.0, -0.2], [0.0, 0.0, 1.0]).radius(1e-3).divergence(2e-3);
+    /// assert!(matches!(laser.place(), SourcePlace::Disk { radius: 1e-3, .. }));
+    /// ```
     pub fn beam(position: impl Into<DVec3>, direction: impl Into<DVec3>) -> Self {
         let axis = direction.into();
         let place = Place::Disk {
@@ -122,6 +141,15 @@ impl Source {
     }
 
     /// Light from a wall, a region or an opening, uniform over its visible area and Lambertian.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Source, SourcePlace};
+    ///
+    /// let port = Source::wall("port").cone(0.3);
+    /// assert_eq!(port.place(), &SourcePlace::Wall { name: "port".to_owned() });
+    /// ```
     pub fn wall(name: impl Into<String>) -> Self {
         Self::new(
             Place::Wall { name: name.into() },
@@ -133,6 +161,19 @@ impl Source {
     }
 
     /// Light from all walls, regions and openings by area, Lambertian.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure, Experiment, Source};
+    ///
+    /// // The equilibrium of a closed white body: its mean free path is 4V/S.
+    /// let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::lambertian(0.9)?);
+    /// let outcome = Experiment::new(&cube, Source::walls()).trace(10_000).run()?;
+    /// assert!(outcome.facts().mean_chord_must_hold);
+    /// assert!(outcome.mean_free_path().zeta(cube.mean_chord(), 0.0).abs() < 4.9);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn walls() -> Self {
         Self::new(
             Place::Walls,
@@ -144,6 +185,19 @@ impl Source {
     }
 
     /// Light that fills the volume uniformly and runs in all directions.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure, Experiment, Source};
+    ///
+    /// let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::absorber());
+    /// let outcome = Experiment::new(&cube, Source::volume()).trace(1_000).run()?;
+    /// // No photon starts on a surface, and none leaves one.
+    /// assert!(outcome.mean_free_path().value.is_nan());
+    /// assert!(outcome.first_flight_moment(1).value < 1.0);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     pub fn volume() -> Self {
         Self::new(Place::Volume, Spread::Isotropic)
     }
@@ -156,6 +210,18 @@ impl Source {
     }
 
     /// Lets a point emit by the cosine law about an axis of any length, into that half of space only.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure, Experiment, Source};
+    ///
+    /// let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::absorber());
+    /// let spot = Source::point([0.0, 0.0, 0.4]).cosine_about([0.0, 0.0, -1.0]);
+    /// let outcome = Experiment::new(&cube, spot).trace(1_000).run()?;
+    /// assert_eq!(outcome.flux("z+")?.incident.value, 0.0);
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     #[must_use]
     pub fn cosine_about(mut self, axis: impl Into<DVec3>) -> Self {
         self.spread = Spread::Cosine {
@@ -181,6 +247,13 @@ impl Source {
     }
 
     /// Keeps light by the cosine law within a half-angle in radians of its axis or of the wall's normal.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// let narrow = albedra::Source::wall("port").cone(0.1);
+    /// assert!(matches!(narrow.spread(), albedra::Spread::Cosine { half_angle: 0.1, .. }));
+    /// ```
     #[must_use]
     pub fn cone(mut self, radians: f64) -> Self {
         match &mut self.spread {
@@ -196,6 +269,19 @@ impl Source {
     }
 
     /// Makes the light of walls parallel to a direction of any length, which must lead inward from all of them.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// use albedra::{Coating, Enclosure, Experiment, Source};
+    ///
+    /// let cube = Enclosure::cuboid([1.0, 1.0, 1.0])?.coated(Coating::absorber());
+    /// let daylight = Source::wall("z+").parallel([0.0, 0.0, -1.0]);
+    /// let outcome = Experiment::new(&cube, daylight).trace(1_000).run()?;
+    /// assert_eq!(outcome.flux("z-")?.direct.value, 1.0);
+    /// assert!(Experiment::new(&cube, Source::wall("z+").parallel([0.0, 0.0, 1.0])).check().is_err());
+    /// # Ok::<(), Box<dyn std::error::Error>>(())
+    /// ```
     #[must_use]
     pub fn parallel(mut self, direction: impl Into<DVec3>) -> Self {
         self.spread = Spread::Parallel {
