@@ -16,9 +16,14 @@ const SIDES: u32 = 24;
 
 fn bench(criterion: &mut Criterion, group: &str, name: &str, experiment: &Experiment) {
     let mut group = criterion.benchmark_group(group);
-    group.sample_size(20).throughput(Throughput::Elements(PHOTONS));
+    group
+        .sample_size(20)
+        .throughput(Throughput::Elements(PHOTONS));
     group.bench_function(BenchmarkId::from_parameter(name), |bencher| {
-        bencher.iter(|| black_box(experiment.trace(PHOTONS).seed(1).threads(1).run()).expect("a valid experiment"));
+        bencher.iter(|| {
+            black_box(experiment.trace(PHOTONS).seed(1).threads(1).run())
+                .expect("a valid experiment")
+        });
     });
     group.finish();
 }

@@ -28,7 +28,10 @@ impl Case {
     /// # Errors
     ///
     /// If the mesh is not given, cannot be read or is unsound.
-    pub fn experiment(&self, mesh: Option<&Path>) -> Result<Experiment, Box<dyn std::error::Error>> {
+    pub fn experiment(
+        &self,
+        mesh: Option<&Path>,
+    ) -> Result<Experiment, Box<dyn std::error::Error>> {
         let grid = TimeGrid::new(STOP, 256)?;
         let experiment = if let Self::Sphere(name) = self {
             let path = mesh.ok_or_else(|| format!("case {name} needs --mesh"))?;
@@ -80,7 +83,10 @@ pub struct CaseError(pub String);
 impl fmt::Display for CaseError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         let name = &self.0;
-        write!(f, "case must be box, box-mirror, dark or sphere-…, got {name}")
+        write!(
+            f,
+            "case must be box, box-mirror, dark or sphere-…, got {name}"
+        )
     }
 }
 

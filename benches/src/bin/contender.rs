@@ -51,7 +51,9 @@ fn options(arguments: impl Iterator<Item = String>) -> Result<Options, Box<dyn s
     };
     let mut arguments = arguments;
     while let Some(name) = arguments.next() {
-        let value = arguments.next().ok_or_else(|| format!("{name} needs a value"))?;
+        let value = arguments
+            .next()
+            .ok_or_else(|| format!("{name} needs a value"))?;
         match name.as_str() {
             "--case" => options.case = value.parse()?,
             "--photons" => options.photons = value.parse()?,
@@ -74,7 +76,10 @@ fn level(name: &str) -> Result<Level, String> {
         "avx512" => 2,
         _ => return Err(format!("level must be base, avx2 or avx512, got {name}")),
     };
-    levels.get(index).copied().ok_or_else(|| format!("this machine has no {name}"))
+    levels
+        .get(index)
+        .copied()
+        .ok_or_else(|| format!("this machine has no {name}"))
 }
 
 fn contend(options: &Options) -> Result<String, Box<dyn std::error::Error>> {

@@ -135,7 +135,10 @@ mod tests {
         values().for_each(|x| sum.add(x));
         assert_eq!(sum.quanta(4000), values().map(wide_quanta).sum());
         (0..4000).for_each(|k| whole.add_whole(ONE - k));
-        assert_eq!(whole.quanta(0), (0..4000).map(|k| i128::from(ONE - k)).sum());
+        assert_eq!(
+            whole.quanta(0),
+            (0..4000).map(|k| i128::from(ONE - k)).sum()
+        );
     }
 
     #[test]
