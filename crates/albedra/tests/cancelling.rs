@@ -143,3 +143,22 @@ fn watches_that_go_on_change_nothing() {
     assert!(calls > 0);
     assert_eq!(watched, experiment.trace(20_000).run().unwrap());
 }
+
+#[test]
+fn a_watch_that_panics_does_not_leave_the_workers_waiting() {
+    let cube = Enclosure::cuboid([1.0; 3])
+        .unwrap()
+        .coated(Coating::mirror(0.999_999).unwrap());
+    let experiment = Experiment::new(&cube, Source::volume());
+    let run = std::panic::AssertUnwindSafe(|| {
+        experiment
+            .trace(1 << 40)
+            .watch(|_| panic!("the watch has had enough"))
+            .run()
+    });
+    let panic = std::panic::catch_unwind(run).expect_err("the panic comes out");
+    assert_eq!(
+        panic.downcast_ref::<&str>(),
+        Some(&"the watch has had enough")
+    );
+}

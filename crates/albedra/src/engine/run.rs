@@ -109,6 +109,7 @@ pub(crate) fn run(
         .build()
         .map_err(|error| EngineError::Threads(error.to_string()))?;
     pool.in_place_scope(|scope| {
+        let _guard = StopOnPanic(&stop);
         let (sender, receiver) = sync_channel(2 * order.threads);
         for _ in 0..order.threads {
             let (sender, place, queue) = (sender.clone(), &place, &queue);
@@ -125,8 +126,11 @@ pub(crate) fn run(
                 Err(RecvTimeoutError::Timeout) => {}
                 Err(RecvTimeoutError::Disconnected) => break,
             }
-            if told.elapsed() >= TICK && flow.is_continue() {
-                told = Instant::now();
+            if told.elapsed() < TICK {
+                continue;
+            }
+            told = Instant::now();
+            if flow.is_continue() {
                 let done = ended.load(Ordering::Relaxed);
                 let progress = Progress {
                     done,
@@ -142,6 +146,17 @@ pub(crate) fn run(
         }
     });
     Ok((gathered.totals, flow))
+}
+
+/// Stops the workers when a thread panics, so that none waits for ever and the panic comes out.
+struct StopOnPanic<'a>(&'a AtomicBool);
+
+impl Drop for StopOnPanic<'_> {
+    fn drop(&mut self) {
+        if std::thread::panicking() {
+            self.0.store(true, Ordering::Relaxed);
+        }
+    }
 }
 
 /// Which tasks are begun.
@@ -162,6 +177,7 @@ fn batches_ahead(outputs: usize) -> u64 {
 /// Takes tasks in order until there are none left or the run stops.
 fn work(order: &Order<'_>, place: &Workplace<'_>, queue: &Queue, sender: &SyncSender<(u64, Part)>) {
     let mut block = Block::new();
+    let _guard = StopOnPanic(place.stop);
     while !place.stop.load(Ordering::Relaxed) {
         let number = queue.next.fetch_add(1, Ordering::Relaxed);
         let batch = number / GROUPS as u64;

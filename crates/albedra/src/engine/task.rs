@@ -47,11 +47,13 @@ impl Task {
         let mut crew = Crew {
             task: self,
             emitted: 0,
+            unplaced: 0,
             place,
         };
         let mut ended = Vec::with_capacity(LANES);
         block.live = 0;
         crew.fill(block, &[]);
+        book_losses(plan, block, &mut cells);
         while block.live > 0 {
             if place.stop.load(Ordering::Relaxed) {
                 return None;
@@ -68,14 +70,20 @@ impl Task {
             turn(level, &plan.surfaces, plan.mirrors, block);
             plan.retirement.retire(level, block, &mut ended);
             crew.fill(block, &ended);
-            for (range, observable) in &plan.observables {
-                observable.losses(&block.losses, &mut cells[range.clone()]);
-            }
-            block.losses.clear();
+            book_losses(plan, block, &mut cells);
         }
+        counters.untracked += crew.unplaced;
         counters.retried += retries.retried;
         Some(Part { cells, counters })
     }
+}
+
+/// Books what has left away from strikes.
+fn book_losses(plan: &Plan, block: &mut Block, cells: &mut [i128]) {
+    for (range, observable) in &plan.observables {
+        observable.losses(&block.losses, &mut cells[range.clone()]);
+    }
+    block.losses.clear();
 }
 
 /// Books photons without a wall as untracked; what is left in their lanes weighs nothing and ends at this strike.
@@ -102,6 +110,8 @@ fn give_up_missed(block: &mut Block, counters: &mut Counters) {
 struct Crew<'a> {
     task: Task,
     emitted: u64,
+    /// Photons for which no start was found.
+    unplaced: u64,
     place: &'a Workplace<'a>,
 }
 
@@ -141,6 +151,8 @@ impl Crew<'_> {
                     path: 0.0,
                     cause: Cause::Untracked,
                 });
+                self.unplaced += 1;
+                self.place.ended.fetch_add(1, Ordering::Relaxed);
                 continue;
             };
             for axis in 0..3 {
