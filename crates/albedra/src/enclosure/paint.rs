@@ -109,7 +109,8 @@ impl Enclosure {
                 near: Near::to(wall, walls),
             });
         };
-        if name.is_empty()
+        // An output `ledger.absorbed` must mean the ledger's.
+        if ["", "ledger"].contains(&name)
             || self.solid.wall(name).is_some()
             || self.patches.iter().any(|patch| patch.name == name)
         {

@@ -2,38 +2,22 @@
 
 use std::sync::Arc;
 
-use super::layout::{Facts, Layout, MapLayout, Row};
+use super::facts::{facts, retirement};
+use super::ground::{ground, surfaces};
+use super::layout::{Facts, Layout, Row};
+use super::observing::{maps, observables};
 use super::{Experiment, ExperimentError, TimeGrid, fingerprint, sites};
-use crate::enclosure::{Enclosure, EnclosureError, Finish, Solid};
-use crate::engine::{Plan, Retirement, Surfaces, WallPlan};
-use crate::flight::{Facets, Flight, Planes};
-use crate::math::{ln, power_of_two_above, smaller};
+use crate::enclosure::Enclosure;
+use crate::engine::{Plan, Retirement};
+use crate::math::{power_of_two_above, smaller};
 use crate::medium::Passage;
-use crate::near::Near;
-use crate::observe::{
-    DecayBins, FlightMoments, FluxRows, LossLedger, MapCells, MapGrid, Observable, TimeBins,
-};
+use crate::observe::{DecayBins, FlightMoments, FluxRows, LossLedger, Observable, TimeBins};
 
 /// A plan, and what its cells mean.
 #[derive(Debug)]
 pub(crate) struct Compiled {
     pub(crate) plan: Plan,
     pub(crate) layout: Arc<Layout>,
-}
-
-/// Mean reflectances are kept this far from 0 and 1 where a decay time is expected from them.
-const LEAST_REFLECTANCE: f64 = 1e-6;
-const MOST_REFLECTANCE: f64 = 1.0 - 1e-9;
-
-/// The surfaces that a flight kernel hits.
-#[derive(Debug)]
-pub(crate) struct Ground {
-    /// Wall of each surface.
-    pub(crate) walls: Vec<u32>,
-    /// Plane n·x = offset of each surface, outward unit normal.
-    pub(crate) planes: Vec<[f64; 4]>,
-    /// Surface of each triangle of the solid.
-    pub(crate) of_triangle: Vec<u32>,
 }
 
 pub(crate) fn compile(experiment: &Experiment) -> Result<Compiled, ExperimentError> {
@@ -79,8 +63,8 @@ pub(crate) fn compile(experiment: &Experiment) -> Result<Compiled, ExperimentErr
     })
 }
 
-/// The layout alone, without hierarchies and sources.
-pub(crate) fn rows(enclosure: &Enclosure) -> Result<Vec<Row>, ExperimentError> {
+/// The disjoint pieces of the boundary, each of which must have been given a finish.
+fn rows(enclosure: &Enclosure) -> Result<Vec<Row>, ExperimentError> {
     let mut rows = Vec::new();
     for piece in enclosure.pieces() {
         let Some(finish) = piece.finish else {
@@ -96,79 +80,6 @@ pub(crate) fn rows(enclosure: &Enclosure) -> Result<Vec<Row>, ExperimentError> {
         });
     }
     Ok(rows)
-}
-
-fn facts(experiment: &Experiment, rows: &[Row]) -> Facts {
-    let enclosure = &experiment.enclosure;
-    let medium = enclosure.medium;
-    let area: f64 = rows.iter().map(|row| row.area).sum();
-    let mean =
-        |f: &dyn Fn(&Row) -> f64| rows.iter().map(|row| row.area * f(row)).sum::<f64>() / area;
-    let reflectance = mean(&|row| row.coating.map_or(0.0, |coating| coating.reflectance()));
-    let mean_chord = enclosure.mean_chord();
-    let per_metre = decay_per_metre(reflectance, mean_chord, medium.absorption());
-    let lossless = reflectance == 1.0 && medium.absorption() == 0.0;
-    let alike = rows
-        .iter()
-        .all(|row| row.coating.is_some_and(|c| c.specular_share() == 0.0))
-        && rows.iter().all(|row| row.coating == rows[0].coating);
-    let plain = experiment.settings.path_limit.is_none() && medium.absorption() == 0.0;
-    Facts {
-        volume: enclosure.volume(),
-        area: enclosure.area(),
-        mean_chord,
-        opening_fraction: mean(&|row| f64::from(u8::from(row.is_opening()))),
-        mean_reflectance: reflectance,
-        expected_decay_time: if lossless {
-            f64::INFINITY
-        } else {
-            1.0 / (per_metre * medium.speed())
-        },
-        mean_chord_must_hold: alike
-            && plain
-            && experiment
-                .settings
-                .sources
-                .iter()
-                .all(sites::is_equilibrium),
-    }
-}
-
-/// The rate per metre at which energy is expected to fall.
-fn decay_per_metre(mean_reflectance: f64, mean_chord: f64, absorption: f64) -> f64 {
-    let above = if mean_reflectance > LEAST_REFLECTANCE {
-        mean_reflectance
-    } else {
-        LEAST_REFLECTANCE
-    };
-    let clamped = smaller(above, MOST_REFLECTANCE);
-    -ln(clamped) / mean_chord + absorption
-}
-
-fn retirement(experiment: &Experiment, facts: &Facts) -> Retirement {
-    let medium = experiment.enclosure.medium;
-    let kept = facts.mean_reflectance
-        * (1.0 - crate::math::one_minus_exp_neg(medium.absorption() * facts.mean_chord));
-    // A hundred times the mean number of strikes, where that is more than a million.
-    let strikes = 100.0 / (1.0 - smaller(kept, 1.0 - 1e-10));
-    Retirement {
-        decay_per_metre: decay_per_metre(
-            facts.mean_reflectance,
-            facts.mean_chord,
-            medium.absorption(),
-        ),
-        stop: experiment
-            .settings
-            .time
-            .as_ref()
-            .map_or(0.0, |grid| grid.stop() * medium.speed()),
-        path_limit: experiment.settings.path_limit.unwrap_or(f64::INFINITY),
-        strike_limit: if strikes > 1e6 {
-            strikes as u64
-        } else {
-            1_000_000
-        },
-    }
 }
 
 fn layout(
@@ -249,208 +160,4 @@ fn layout(
         outputs,
         exponents,
     })
-}
-
-fn maps(experiment: &Experiment, first: usize) -> Result<Vec<MapLayout>, ExperimentError> {
-    let enclosure = &experiment.enclosure;
-    let mut at = first;
-    let mut maps: Vec<MapLayout> = Vec::new();
-    for request in &experiment.settings.maps {
-        let wrong = |required| ExperimentError::Map {
-            wall: request.wall.clone(),
-            required,
-            cells: request.cells,
-        };
-        let Some(wall) = enclosure.solid.wall(&request.wall) else {
-            let near = Near::to(
-                &request.wall,
-                enclosure.mesh().walls.iter().map(String::as_str),
-            );
-            return Err(ExperimentError::UnknownWall {
-                name: request.wall.clone(),
-                near,
-            });
-        };
-        if maps.iter().any(|map| map.wall == request.wall) {
-            return Err(wrong("a wall can have one map only"));
-        }
-        let [columns, rows] = request.cells;
-        if !((1..=100_000).contains(&columns) && (1..=100_000).contains(&rows)) {
-            return Err(wrong("cells along u and v must number from 1 to 100000"));
-        }
-        let plane = enclosure
-            .plane(wall)
-            .map_err(|_: EnclosureError| wrong("the wall must be planar and in one piece"))?;
-        let cells = plane.cells(columns, rows);
-        maps.push(MapLayout {
-            wall: request.wall.clone(),
-            u_edges: cells.u_edges,
-            v_edges: cells.v_edges,
-            areas: cells.areas,
-            cells: at..at + columns * rows,
-        });
-        at += columns * rows;
-    }
-    Ok(maps)
-}
-
-/// The kernel for a body, chosen by its shape, and its surfaces.
-fn ground(solid: &Solid) -> (Ground, Box<dyn Flight>) {
-    if let Some(convex) = &solid.convex {
-        let planes: Vec<_> = convex
-            .iter()
-            .map(|plane| [plane.normal.x, plane.normal.y, plane.normal.z, plane.offset])
-            .collect();
-        let mut of_facet = vec![0; solid.mesh.facets()];
-        for (index, plane) in (0_u32..).zip(convex) {
-            for &facet in &plane.facets {
-                of_facet[facet as usize] = index;
-            }
-        }
-        let of_triangle = solid
-            .triangle_facets
-            .iter()
-            .map(|&facet| of_facet[facet as usize])
-            .collect();
-        let walls = convex.iter().map(|plane| plane.wall).collect();
-        let flight = Box::new(Planes::new(&planes));
-        return (
-            Ground {
-                walls,
-                planes,
-                of_triangle,
-            },
-            flight,
-        );
-    }
-    let planes: Vec<_> = (0..solid.triangles.len())
-        .map(|triangle| solid.plane_of(triangle))
-        .collect();
-    let walls = (0..solid.triangles.len())
-        .map(|triangle| solid.triangle_wall(triangle))
-        .collect();
-    let of_triangle = (0_u32..).take(planes.len()).collect();
-    let flight = Facets::new(solid.hierarchy(false), planes.clone());
-    (
-        Ground {
-            walls,
-            planes,
-            of_triangle,
-        },
-        Box::new(flight),
-    )
-}
-
-fn surfaces(enclosure: &Enclosure, layout: &Layout, ground: &Ground) -> Surfaces {
-    let pieces = enclosure.pieces();
-    let mut plans: Vec<Option<WallPlan>> = vec![None; enclosure.solid.walls.len()];
-    for (wall, plan) in plans.iter_mut().enumerate() {
-        let mapped = layout
-            .maps
-            .iter()
-            .any(|map| map.wall == enclosure.mesh().walls[wall]);
-        let regions: Vec<_> = (0_u64..)
-            .zip(&pieces)
-            .filter(|(_, piece)| piece.wall == wall)
-            .filter_map(|(row, piece)| Some((enclosure.patches[piece.patch?].shape.clone(), row)))
-            .collect();
-        if let (true, Some(plane)) = (
-            mapped || !regions.is_empty(),
-            &enclosure.solid.walls[wall].plane,
-        ) {
-            *plan = Some(WallPlan {
-                frame: plane.frame,
-                regions,
-            });
-        }
-    }
-    let placed: Vec<bool> = ground
-        .walls
-        .iter()
-        .map(|&wall| plans[wall as usize].is_some())
-        .collect();
-    let coating = |piece: &crate::enclosure::Piece<'_>| piece.finish.and_then(Finish::coating);
-    Surfaces {
-        walls: ground.walls.clone(),
-        // Walls come first among the rows, in their order.
-        rows: ground.walls.iter().map(|&wall| u64::from(wall)).collect(),
-        any_placed: placed.contains(&true),
-        placed,
-        plans,
-        reflectance: pieces
-            .iter()
-            .map(|piece| coating(piece).map_or(0.0, |c| c.reflectance()))
-            .collect(),
-        specular_share: pieces
-            .iter()
-            .map(|piece| coating(piece).map_or(0.0, |c| c.specular_share()))
-            .collect(),
-    }
-}
-
-fn observables(
-    layout: &Layout,
-    ground: &Ground,
-) -> Vec<(std::ops::Range<usize>, Box<dyn Observable>)> {
-    let mut all: Vec<Box<dyn Observable>> = vec![
-        Box::new(FluxRows {
-            rows: layout.rows.len(),
-        }),
-        Box::new(LossLedger),
-        Box::new(DecayBins {
-            time: layout.time.clone(),
-        }),
-        Box::new(layout.flights.clone()),
-    ];
-    if !layout.maps.is_empty() {
-        all.push(Box::new(map_cells(layout, ground)));
-    }
-    let mut at = 0;
-    all.into_iter()
-        .map(|observable| {
-            let range = at..at + observable.outputs();
-            at = range.end;
-            (range, observable)
-        })
-        .collect()
-}
-
-fn map_cells(layout: &Layout, ground: &Ground) -> MapCells {
-    let mut firsts = Vec::new();
-    let mut at = 0;
-    let mut grids = Vec::new();
-    for map in &layout.maps {
-        let wall = layout
-            .rows
-            .iter()
-            .position(|row| row.name == map.wall)
-            .unwrap_or(usize::MAX);
-        let cells = [map.u_edges.len() - 1, map.v_edges.len() - 1];
-        let lower = [map.u_edges[0], map.v_edges[0]];
-        let span = [
-            map.u_edges[cells[0]] - lower[0],
-            map.v_edges[cells[1]] - lower[1],
-        ];
-        let per_metre = [cells[0] as f64 / span[0], cells[1] as f64 / span[1]];
-        firsts.push(at);
-        at += cells[0] * cells[1];
-        grids.push(MapGrid {
-            wall,
-            cells,
-            lower,
-            per_metre,
-        });
-    }
-    let grid_of = |&wall: &u32| {
-        grids
-            .iter()
-            .position(|grid| grid.wall == wall as usize)
-            .and_then(|grid| u32::try_from(grid).ok())
-    };
-    let grid_of = ground.walls.iter().map(grid_of).collect();
-    MapCells {
-        grids,
-        firsts,
-        grid_of,
-    }
 }

@@ -41,6 +41,7 @@ pub(super) fn history(experiment: &Experiment, retirement: &Retirement) -> Finge
 pub(super) fn totals(history: Fingerprint, layout: &Layout) -> Fingerprint {
     let mut builder = FingerprintBuilder::new("albedra totals");
     builder.bytes(&history.0).u64(layout.outputs as u64);
+    builder.u64(u64::from(layout.time.per_metre.is_some()));
     for &edge in &layout.time.edges {
         builder.f64(edge);
     }

@@ -7,6 +7,7 @@ use crate::observe::{FlightMoments, TimeBins};
 
 /// A disjoint piece of the boundary that is reported: a wall without its regions, or the visible part of a region.
 #[derive(Clone, Debug, PartialEq)]
+#[non_exhaustive]
 pub struct Row {
     /// Name of the wall, region or opening.
     pub name: String,
@@ -51,6 +52,7 @@ pub(crate) struct Layout {
 
 /// What is known before any photon is traced.
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[non_exhaustive]
 pub struct Facts {
     /// m³.
     pub volume: f64,

@@ -2,9 +2,12 @@
 
 mod compile;
 mod error;
+mod facts;
 mod fingerprint;
 mod grid;
+mod ground;
 mod layout;
+mod observing;
 mod sites;
 mod text;
 mod trace;

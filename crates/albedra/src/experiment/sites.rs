@@ -1,6 +1,6 @@
 //! Sources fitted to their enclosure.
 
-use super::compile::Ground;
+use super::ground::Ground;
 use super::{Experiment, ExperimentError};
 use crate::enclosure::Solid;
 use crate::engine::{Lane, Surfaces};
