@@ -122,12 +122,15 @@ def _flux(outcome: Outcome, ax: Axes) -> Axes:
         values = np.array([estimate.value for estimate in estimates])
         intervals = [estimate.coverage_interval(COVERAGE) for estimate in estimates]
         half = np.array([interval.high for interval in intervals]) - values
-        half = np.where(np.isfinite(half), half, 0.0)
+        known = np.isfinite(half)
         style = {"ecolor": "black", "elinewidth": 1.0, "capsize": 2.5}
         if kind == "incident":
-            for place, estimate, end in zip(places, estimates, values + half, strict=True):
+            ends = values + np.where(known, half, 0.0)
+            for place, estimate, end in zip(places, estimates, ends, strict=True):
                 ax.annotate(f" {estimate}", (end, place + shift), va="center", fontsize=7)
-        ax.barh(places + shift, values, 0.25, color=colour, xerr=half, error_kw=style, label=label)
+        ax.barh(places + shift, values, 0.25, color=colour, label=label)
+        # Where there are too few photons for an uncertainty, none is drawn.
+        ax.errorbar(values[known], (places + shift)[known], xerr=half[known], fmt="none", **style)
     ax.set_yticks(places, names)
     ax.invert_yaxis()
     ax.set_xlim(0, 1.35 * ax.get_xlim()[1])
@@ -135,7 +138,8 @@ def _flux(outcome: Outcome, ax: Axes) -> Axes:
     ax.set_title("flux", loc="left")
     ax.grid(True, axis="x", alpha=0.3)
     ax.set_axisbelow(True)
-    ax.legend(frameon=False, loc="lower right")
+    # Above the bars, which may fill the axes down to the last row.
+    ax.legend(frameon=False, loc="lower right", bbox_to_anchor=(1, 1), borderaxespad=0, ncols=3, fontsize=8)
     return ax
 
 
@@ -148,7 +152,7 @@ def _map(map_: Map, ax: Axes) -> Axes:
     ax.set(xlabel="u / m", ylabel="v / m")
     with np.errstate(divide="ignore", invalid="ignore"):
         relative = np.ma.masked_invalid(map_.u / map_.irradiance)
-    noise = f", u of a cell {100 * float(np.ma.median(relative)):.2g} %" if relative.count() else ""
+    noise = f", median u of a cell {100 * float(np.ma.median(relative)):.2g} %" if relative.count() else ""
     ax.set_title(f"{map_.wall}{noise}", loc="left")
     return ax
 

@@ -19,3 +19,8 @@ class CoverageInterval(NamedTuple):
 
     high: float
     """Upper end, in the unit of the estimate."""
+
+
+# The strings under fields are for readers of this file; help() shows these.
+CoverageInterval.low.__doc__ = "Lower end, in the unit of the estimate."
+CoverageInterval.high.__doc__ = "Upper end, in the unit of the estimate."

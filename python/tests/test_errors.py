@@ -129,6 +129,11 @@ CASES = {
         "walls must hold one name for each of the 4 faces, got 1",
     ),
     "missing": (lambda: al.Enclosure.load("no such.obj", unit="mm"), FileNotFoundError, "no such.obj"),
+    "openings": (
+        lambda: al.Enclosure.load("no such.obj", unit="mm", openings="lid"),
+        TypeError,
+        "openings must be a list of names, got 'lid'",
+    ),
     "unit": (
         lambda: al.Enclosure.load("no such.obj", unit="yd"),
         ValueError,
@@ -144,6 +149,14 @@ def test_wrong_arguments_are_named(name):
     with pytest.raises(error, match=re.escape(text)) as caught:
         call()
     assert str(caught.value)
+
+
+def test_a_bad_file_is_noted(tmp_path):
+    path = tmp_path / "half.obj"
+    path.write_text("v 0 0 0\nv 1 0 0\nv x 1 0\n")
+    with pytest.raises(al.EnclosureError, match="line 3: a number required") as caught:
+        al.Enclosure.load(path, unit="mm")
+    assert caught.value.__notes__ == [f"while loading {path}"]
 
 
 def test_wrong_names_of_outputs_are_named(outcome):

@@ -102,6 +102,21 @@ def test_every_representation_fits_80_columns(outcome):
     assert max(len(line) for line in str(outcome).splitlines()) <= 80
 
 
+def test_records_are_printed_in_full(outcome):
+    lines = str(outcome.ledger).splitlines()
+    names = [line.split()[0] for line in lines]
+    assert names == ["emitted", "absorbed", "escaped", "medium", "cut", "untracked", "roulette", "closes"]
+    assert lines[2].split(maxsplit=1)[1] == str(outcome.ledger.escaped)
+    assert str(outcome.flux["sample"].incident) in str(outcome.flux["sample"])
+
+
+def test_representations_count_well(outcome):
+    bare = al.Experiment(al.Enclosure.cuboid((1, 1, 1), coating=al.Coating.absorber()), al.Source.volume())
+    assert repr(bare) == "<Experiment: 6 rows, 1 source, 0 maps>"
+    assert repr(bare.trace(10).maps) == "<by map: none>"
+    assert repr(outcome.maps).startswith("<by map: z-")
+
+
 @pytest.mark.parametrize("thing", REBUILT, ids=repr)
 def test_descriptions_cannot_be_changed(thing):
     with pytest.raises(AttributeError):

@@ -173,6 +173,19 @@ fn shape_error(argument: &str, wanted: &str, shape: &[usize]) -> PyErr {
     ))
 }
 
+/// A list of names; a single text is none, though Python would take it for a list of letters.
+pub(crate) fn names(argument: &str, value: Option<&Bound<'_, PyAny>>) -> PyResult<Vec<String>> {
+    let Some(value) = value else {
+        return Ok(Vec::new());
+    };
+    value.extract().map_err(|_| {
+        let text = value
+            .repr()
+            .map_or_else(|_| "?".to_owned(), |text| text.to_string());
+        PyTypeError::new_err(format!("{argument} must be a list of names, got {text}"))
+    })
+}
+
 /// A whole number from 0 to 2⁶⁴ − 1 or a smaller limit of its type.
 pub(crate) fn count<T: TryFrom<u64>>(argument: &str, value: &Bound<'_, PyAny>) -> PyResult<T> {
     let py = value.py();

@@ -9,7 +9,7 @@ use pyo3::prelude::*;
 use crate::arrays::{Shared, same, share};
 use crate::estimate::Estimate;
 use crate::outcome::Outcome;
-use crate::records::record;
+use crate::records::{Columns, record};
 use crate::text::short;
 
 /// How a view pickles: as its outcome and the attribute that gives it.
@@ -59,6 +59,14 @@ impl Decay {
     }
 }
 
+/// How many edges there are, and how far they go.
+pub(crate) fn extent(py: Python<'_>, edges: &Shared, unit: &str) -> String {
+    let edges = edges.bind(py).readonly();
+    let edges = edges.as_slice().unwrap_or_default();
+    let stop = edges.last().copied().unwrap_or_default();
+    format!("{} edges up to {} {unit}", edges.len(), short(stop))
+}
+
 #[pymethods]
 impl Decay {
     /// Times in s; the pulse is at 0.
@@ -97,13 +105,18 @@ impl Decay {
     /// -------
     /// DecayTime
     ///     With a flag that tells where the curve is not one exponential.
+    ///
+    /// Raises
+    /// ------
+    /// ValueError
+    ///     If the window holds fewer than five edges with energy left, or if the energy does not fall in it.
     #[pyo3(signature = (start = None, stop = None))]
     fn decay_time(&self, start: Option<f64>, stop: Option<f64>) -> PyResult<DecayTime> {
         let window = match (start, stop) {
             (None, None) => None,
             (Some(start), Some(stop)) if start < stop => Some((start, stop)),
             (Some(start), Some(stop)) => {
-                let text = format!("stop must be above start {start} s, got {stop}");
+                let text = format!("stop must be above start {start:?} s, got {stop:?} s");
                 return Err(PyValueError::new_err(text));
             }
             _ => {
@@ -113,7 +126,9 @@ impl Decay {
             }
         };
         let time = self.outcome.decay_time(window).ok_or_else(|| {
-            PyValueError::new_err("the window must hold at least five edges with energy left")
+            PyValueError::new_err(
+                "the window must hold at least five edges with energy left, and the energy must fall in it",
+            )
         })?;
         Ok(DecayTime::of(&time))
     }
@@ -129,10 +144,7 @@ impl Decay {
     }
 
     fn __repr__(&self, py: Python<'_>) -> String {
-        let edges = self.edges.bind(py).readonly();
-        let edges = edges.as_slice().unwrap_or_default();
-        let stop = edges.last().copied().unwrap_or_default();
-        format!("<Decay: {} edges up to {} s>", edges.len(), short(stop))
+        format!("<Decay: {}>", extent(py, &self.edges, "s"))
     }
 }
 
@@ -149,6 +161,10 @@ record! {
         second_half: Estimate,
         /// Whether the halves differ by more than three standard uncertainties and 1 %.
         not_one_exponential: bool,
+    }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
     }
 }
 
@@ -234,11 +250,8 @@ impl Curve {
         )
     }
 
-    fn __repr__(&self) -> &'static str {
-        if self.on {
-            "<Curve: lamp on>"
-        } else {
-            "<Curve: lamp off>"
-        }
+    fn __repr__(&self, py: Python<'_>) -> String {
+        let lamp = if self.on { "on" } else { "off" };
+        format!("<Curve: lamp {lamp}, {}>", extent(py, &self.edges, "s"))
     }
 }

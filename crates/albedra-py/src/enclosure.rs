@@ -6,13 +6,13 @@ use pyo3::exceptions::PyValueError;
 use pyo3::prelude::*;
 use pyo3::types::{PyBytes, PyTuple};
 
-use crate::arrays::{count, points, vector};
+use crate::arrays::{count, names, points, vector};
 use crate::coating::Coating;
-use crate::errors::raise;
+use crate::errors::{noted, raise};
 use crate::medium::Medium;
 use crate::mesh;
 use crate::region::Region;
-use crate::text::{fitting, short};
+use crate::text::{counted, fitting, short};
 use crate::wall::{Audit, Wall};
 
 /// A closed body of walls with light inside: its shape, what its walls do to light, regions, and the medium.
@@ -214,18 +214,19 @@ impl Enclosure {
         unit: &str,
         coating: Option<Coating>,
         coatings: Coatings<'_>,
-        openings: Option<Vec<String>>,
+        openings: Option<Bound<'_, PyAny>>,
         medium: Option<Medium>,
     ) -> PyResult<Self> {
         let unit: albedra::Unit = unit
             .parse()
             .map_err(|error: albedra::UnitError| raise(error))?;
+        let openings = names("openings", openings.as_ref())?;
         let enclosure = py
-            .detach(|| albedra::Enclosure::load(path, unit))
-            .map_err(raise)?;
+            .detach(|| albedra::Enclosure::load(&path, unit))
+            .map_err(|error| noted(py, raise(error), &path))?;
         let mut enclosure =
             Self::finished(enclosure, coating.as_ref(), &coatings, medium.as_ref())?;
-        for name in openings.unwrap_or_default() {
+        for name in openings {
             enclosure = Self(enclosure.0.opened(&name).map_err(raise)?);
         }
         Ok(enclosure)
@@ -367,16 +368,18 @@ impl Enclosure {
     fn __repr__(&self) -> String {
         let walls = self.0.walls();
         let regions: usize = walls.iter().map(|wall| wall.regions.len()).sum();
+        let size = format!(
+            "{}, {}",
+            counted(walls.len(), "wall"),
+            counted(regions, "region")
+        );
         let full = format!(
-            "<Enclosure: {} walls, {regions} regions, {} m³, {} m², 4V/S {} m>",
-            walls.len(),
+            "<Enclosure: {size}, {} m³, {} m², 4V/S {} m>",
             short(self.0.volume()),
             short(self.0.area()),
             short(self.0.mean_chord())
         );
-        fitting(full, || {
-            format!("<Enclosure: {} walls, {regions} regions>", walls.len())
-        })
+        fitting(full, || format!("<Enclosure: {size}>"))
     }
 }
 

@@ -30,7 +30,21 @@ create_exception!(
     albedra,
     Interrupted,
     PyKeyboardInterrupt,
-    "A run that Ctrl-C stopped.\n\n`result` is the Outcome of what was done in full before, or None."
+    "A run that Ctrl-C stopped.
+
+`result` is the Outcome of what was done in full before, or None.
+
+Examples
+--------
+>>> import albedra as al
+>>> box = al.Enclosure.cuboid((1, 1, 1), coating=al.Coating.lambertian(0.5))
+>>> try:
+...     result = al.Experiment(box, al.Source.volume()).trace(1000)
+... except al.Interrupted as stopped:
+...     result = stopped.result
+>>> result.photons
+1000
+"
 );
 
 /// Any error of the core.
@@ -67,6 +81,15 @@ pub(crate) fn raise(fault: impl Into<Fault>) -> PyErr {
             error @ RunError::NoThreads { .. } => PyRuntimeError::new_err(error.to_string()),
             error => PyValueError::new_err(error.to_string()),
         },
+    }
+}
+
+/// The same exception with a note on the file that it is about.
+pub(crate) fn noted(py: Python<'_>, error: PyErr, file: &std::path::Path) -> PyErr {
+    let note = format!("while loading {}", file.display());
+    match error.value(py).call_method1("add_note", (note,)) {
+        Ok(_) => error,
+        Err(other) => other,
     }
 }
 

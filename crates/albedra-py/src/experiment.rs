@@ -13,7 +13,7 @@ use crate::grid::TimeGrid;
 use crate::mesh;
 use crate::outcome::Outcome;
 use crate::source::Source;
-use crate::text::{fitting, quoted};
+use crate::text::{counted, fitting, quoted};
 use crate::trace::{Order, trace};
 
 /// An enclosure, the sources in it and what to observe: immutable, with no randomness in it.
@@ -274,11 +274,14 @@ impl Experiment {
     fn __repr__(&self, py: Python<'_>) -> PyResult<String> {
         let settings = self.0.settings();
         let tail = format!(
-            "{} rows, {} sources, {} maps>",
-            self.0.enclosure().rows().len(),
-            settings.sources.len(),
-            settings.maps.len()
+            "{}, {}, {}>",
+            counted(self.0.enclosure().rows().len(), "row"),
+            counted(settings.sources.len(), "source"),
+            counted(settings.maps.len(), "map")
         );
+        if settings.title.is_empty() {
+            return Ok(format!("<Experiment: {tail}"));
+        }
         let full = format!("<Experiment {}: {tail}", quoted(py, &settings.title)?);
         Ok(fitting(full, || format!("<Experiment: {tail}")))
     }

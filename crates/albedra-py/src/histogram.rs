@@ -6,7 +6,7 @@ use numpy::PyArray1;
 use pyo3::prelude::*;
 
 use crate::arrays::{Shared, same, share};
-use crate::curves::of_outcome;
+use crate::curves::{extent, of_outcome};
 
 /// Lengths of flights that start on a surface.
 #[pyclass(frozen, module = "albedra")]
@@ -67,7 +67,7 @@ impl FlightHistogram {
         of_outcome(py, &self.outcome, "flight_histogram")
     }
 
-    fn __repr__(&self) -> &'static str {
-        "<FlightHistogram>"
+    fn __repr__(&self, py: Python<'_>) -> String {
+        format!("<FlightHistogram: {}>", extent(py, &self.edges, "m"))
     }
 }

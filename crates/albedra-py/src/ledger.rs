@@ -3,7 +3,7 @@
 use pyo3::prelude::*;
 
 use crate::estimate::Estimate;
-use crate::records::record;
+use crate::records::{Columns, record};
 
 record! {
     /// Where all the emitted energy went, in W for a steady lamp (J for a pulse).
@@ -32,6 +32,10 @@ record! {
         roulette: Estimate,
         /// Whether everything that was emitted is accounted for, to the last integer.
         closes: bool,
+    }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
     }
 }
 
@@ -65,6 +69,10 @@ record! {
         /// What leaves through it, if it is an opening, in W.
         escaped: Estimate,
     }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
+    }
 }
 
 impl Flux {
@@ -91,6 +99,10 @@ record! {
         retried: u64,
         /// Photons for which no wall was found.
         untracked: u64,
+    }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
     }
 }
 
@@ -123,6 +135,10 @@ record! {
         /// Whether flights that start on surfaces must have the mean 4V/S.
         mean_chord_must_hold: bool,
     }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
+    }
 }
 
 impl Facts {
@@ -150,6 +166,10 @@ record! {
         reached: f64,
         /// Whether the target was met.
         met: bool,
+    }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
     }
 }
 
@@ -179,6 +199,10 @@ record! {
         left: Option<f64>,
         /// Relative standard uncertainty so far of the target's output, or of the mean path; None if unknown.
         relative_uncertainty: Option<f64>,
+    }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
     }
 }
 

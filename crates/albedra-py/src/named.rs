@@ -95,7 +95,12 @@ impl Named {
     }
 
     fn __repr__(&self) -> String {
-        let full = format!("<{} of {}>", self.what, self.names.join(", "));
+        let names = if self.names.is_empty() {
+            "none".to_owned()
+        } else {
+            self.names.join(", ")
+        };
+        let full = format!("<by {}: {names}>", self.what);
         crate::text::fitting(full.clone(), || full)
     }
 }

@@ -53,6 +53,12 @@ macro_rules! written_by_display {
 
 written_by_display!(u64, usize, i128);
 
+/// A record that can be printed in full.
+pub(crate) trait Columns {
+    /// Its fields and their values, one a line.
+    fn columns(&self, py: Python<'_>) -> PyResult<String>;
+}
+
 /// Makes a class of named fields, with further methods if there are any.
 macro_rules! record {
     (
@@ -101,6 +107,14 @@ macro_rules! record {
             }
 
             $($methods)*
+        }
+
+        impl $crate::records::Columns for $name {
+            fn columns(&self, py: Python<'_>) -> PyResult<String> {
+                Ok($crate::text::lines(&[
+                    $((stringify!($field), $crate::records::Written::written(&self.$field, py)?)),+
+                ]))
+            }
         }
     };
 }

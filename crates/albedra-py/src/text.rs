@@ -48,6 +48,22 @@ pub(crate) fn fitting(full: String, short: impl FnOnce() -> String) -> String {
     format!("{kept}…>")
 }
 
+/// A number of things: "1 wall", "2 walls".
+pub(crate) fn counted(number: usize, noun: &str) -> String {
+    let plural = if number == 1 { "" } else { "s" };
+    format!("{number} {noun}{plural}")
+}
+
+/// Names and values in two columns, one pair a line.
+pub(crate) fn lines(pairs: &[(&str, String)]) -> String {
+    let width = pairs.iter().map(|(name, _)| name.len()).max().unwrap_or(0);
+    let lines: Vec<String> = pairs
+        .iter()
+        .map(|(name, value)| format!("{name:<width$}  {}", value.trim_matches('\'')))
+        .collect();
+    lines.join("\n")
+}
+
 /// A number in four digits, for reading only.
 pub(crate) fn short(x: f64) -> String {
     let magnitude = x.abs();

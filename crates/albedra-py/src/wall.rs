@@ -5,7 +5,7 @@ use pyo3::prelude::*;
 
 use crate::arrays::vector;
 use crate::coating::Coating;
-use crate::records::{Written, record};
+use crate::records::{Columns, Written, record};
 
 type Triple = (f64, f64, f64);
 
@@ -92,6 +92,10 @@ record! {
     fn to_plane(&self, position: &Bound<'_, PyAny>) -> PyResult<(f64, f64)> {
         Ok(self.core().to_plane(DVec3::from_array(vector("position", position)?)))
     }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
+    }
 }
 
 impl Frame {
@@ -129,6 +133,10 @@ record! {
         frame: Option<Frame>,
         /// Names of the regions and openings on it, in the order in which they were painted.
         regions: Names,
+    }
+
+    fn __str__(&self, py: Python<'_>) -> PyResult<String> {
+        self.columns(py)
     }
 }
 

@@ -33,3 +33,19 @@ fn fits_80_columns_and_says_what_the_bracket_is() -> Result<(), Box<dyn std::err
     }
     Ok(())
 }
+
+#[test]
+fn tells_no_decay_time_where_the_energy_does_not_fall() -> Result<(), Box<dyn std::error::Error>> {
+    let chamber = Enclosure::cuboid([1.0; 3])?.coated(Coating::mirror(1.0)?);
+    let outcome = Experiment::new(&chamber, Source::volume())
+        .path_limit(100.0)
+        .trace(1000)
+        .run()?;
+    assert_eq!(outcome.decay_time(None), None);
+    let table = outcome.to_string();
+    assert!(
+        !table.contains("NaN") && !table.contains("one exponential"),
+        "{table}"
+    );
+    Ok(())
+}

@@ -34,7 +34,7 @@ impl Outcome {
     /// its relative uncertainty passes 5 %. The uncertainty is the simulation's, by the jackknife; points along one curve are
     /// correlated, and this takes account of it.
     ///
-    /// Nothing, if there are fewer than five edges with energy in the window.
+    /// Nothing, if there are fewer than five edges with energy in the window, or if the energy does not fall in it.
     ///
     /// # Examples
     ///
@@ -93,6 +93,9 @@ impl Outcome {
 
         let jackknife = self.jackknife();
         let estimate = jackknife.estimate(|sums| self.fit(sums, &whole));
+        if !estimate.value.is_finite() {
+            return None;
+        }
         let first_half = jackknife.estimate(|sums| self.fit(sums, &early));
         let second_half = jackknife.estimate(|sums| self.fit(sums, &late));
         let difference = jackknife.estimate(|sums| self.fit(sums, &late) - self.fit(sums, &early));

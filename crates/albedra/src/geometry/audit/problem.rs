@@ -195,7 +195,7 @@ impl fmt::Display for Problem {
             }
             Self::SeveralBodies { facets } => write!(
                 f,
-                "there are {} bodies that share no edge, with facets {}; keep one, or join them",
+                "there are {} bodies that share no edge, the first facet of each being {}; keep one, or join them",
                 facets.len(),
                 List(facets)
             ),
