@@ -228,3 +228,120 @@ fn turned_from_least(inward: &[[f64; 4]], direction: [f64; 3], standing: u64) ->
     }
     best.1
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::engine::LANES;
+    use crate::math::sin_cos_turn;
+    use crate::source::unit;
+
+    /// An upright prism of radius and height 1 as `[n.x, n.y, n.z, offset]`: sides, then the two ends.
+    fn prism(sides: u32) -> Vec<[f64; 4]> {
+        let side = |k| {
+            let (sine, cosine) = sin_cos_turn(f64::from(k) / f64::from(sides));
+            [cosine, sine, 0.0, 1.0]
+        };
+        let ends = [[0.0, 0.0, 1.0, 0.5], [0.0, 0.0, -1.0, 0.5]];
+        (0..sides).map(side).chain(ends).collect()
+    }
+
+    /// The nearest plane by dividing, one plane at a time.
+    fn plain(planes: &[[f64; 4]], at: [f64; 3], along: [f64; 3], standing: u64) -> (f64, u64) {
+        let dot = |n: &[f64; 4], x: [f64; 3]| n[0] * x[0] + n[1] * x[1] + n[2] * x[2];
+        let mut best = (f64::INFINITY, NOWHERE);
+        for (k, plane) in (0_u64..).zip(planes) {
+            let closing = dot(plane, along);
+            let distance = (plane[3] - dot(plane, at)) / closing;
+            if k != standing && closing > 0.0 && distance < best.0 {
+                best = (distance, k);
+            }
+        }
+        best
+    }
+
+    #[test]
+    fn slabs_find_what_single_planes_find() {
+        // 4 sides are two slabs, 7 sides are seven with one plane; with the ends 3 and 8 slabs, in 1 and 3 groups.
+        assert_eq!(Planes::new(&prism(4)).slabs.len(), 1);
+        assert_eq!(Planes::new(&prism(7)).slabs.len(), 3);
+        for planes in [prism(3), prism(4), prism(7), prism(12)] {
+            let kernel = Planes::new(&planes);
+            for level in Level::available() {
+                let mut block = Block::new();
+                block.live = LANES - 3;
+                for lane in 0..block.live {
+                    block.streams.seed(lane, 5, lane as u64);
+                    let mut draw = block.streams.lane(lane);
+                    let mut number = || draw.unit() - 0.5;
+                    let (at, along) = ([(); 3].map(|()| number()), [(); 3].map(|()| number()));
+                    let along = unit(along);
+                    for axis in 0..3 {
+                        block.position[axis][lane] = at[axis] * 0.9;
+                        block.direction[axis][lane] = along[axis];
+                    }
+                }
+                for _ in 0..50 {
+                    let before: Vec<_> = (0..block.live)
+                        .map(|lane| {
+                            let at = [0, 1, 2].map(|axis| block.position[axis][lane]);
+                            let along = [0, 1, 2].map(|axis| block.direction[axis][lane]);
+                            plain(&planes, at, along, block.surface[lane])
+                        })
+                        .collect();
+                    kernel.next(level, &mut block, &mut Retries::default());
+                    for (lane, (distance, plane)) in before.into_iter().enumerate() {
+                        assert_eq!(block.surface[lane], plane);
+                        assert!((block.flight[lane] - distance).abs() < 1e-14);
+                        let [a, b, c, offset] = planes[plane as usize];
+                        let normal = [0, 1, 2].map(|axis| block.normal[axis][lane]);
+                        assert_eq!(normal, [-a, -b, -c]);
+                        let [x, y, z] = [0, 1, 2].map(|axis| block.position[axis][lane]);
+                        assert!((a * x + b * y + c * z - offset).abs() < 1e-15);
+                    }
+                    for lane in 0..block.live {
+                        let normal = [0, 1, 2].map(|axis| block.normal[axis][lane]);
+                        let mut draw = block.streams.lane(lane);
+                        // Anywhere into the half space, grazing ones too.
+                        let free = [(); 3].map(|()| draw.unit() - 0.5);
+                        let inward = free.iter().zip(normal).map(|(x, n)| x * n).sum::<f64>();
+                        let flip = if inward < 0.0 { -1.0 } else { 1.0 };
+                        let along = unit(free.map(|x| flip * x));
+                        (0..3).for_each(|axis| block.direction[axis][lane] = along[axis]);
+                    }
+                }
+            }
+        }
+    }
+
+    /// Flies one photon in the prism of four sides; gives the plane and the distance.
+    fn fly(at: [f64; 3], along: [f64; 3], standing: u64) -> (u64, f64) {
+        let mut block = Block::new();
+        block.live = 1;
+        for axis in 0..3 {
+            block.position[axis][0] = at[axis];
+            block.direction[axis][0] = along[axis];
+        }
+        block.surface[0] = standing;
+        Planes::new(&prism(4)).next(Level::best(), &mut block, &mut Retries::default());
+        (block.surface[0], block.flight[0])
+    }
+
+    #[test]
+    fn rounding_strikes_no_plane_that_is_not_ahead() {
+        // Along a wall that the photon is behind of.
+        assert_eq!(
+            fly([0.0, 1.0 + 2.3e-16, -0.5], [1.0, 0.0, 0.0], 5),
+            (0, 1.0)
+        );
+        // Into the plane that it stands on.
+        assert_eq!(fly([1.0, 0.0, -0.5], [1e-17, 0.0, 1.0], 0), (4, 1.0));
+        // Towards a wall that it is behind of: struck on the spot.
+        assert_eq!(
+            fly([0.0, 1.0 + 2.3e-16, -0.5], [0.6, 0.8, 0.0], 5),
+            (1, 0.0)
+        );
+        // Away from all planes but the one that it stands on.
+        assert_eq!(fly([1.0, 0.0, 0.0], [1.0, 0.0, 0.0], 0), (1, 0.0));
+    }
+}
