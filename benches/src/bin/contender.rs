@@ -2,7 +2,7 @@
 //!
 //! `seconds` and `cpu_seconds` are transport alone: a run compiles its experiment first (checks, hierarchy), and what
 //! that takes, measured once more beside it, is subtracted and goes into `setup_seconds`. `bits` is a hash of the exact
-//! totals: a change for speed leaves it alone, or says why not.
+//! totals: a change for speed leaves it alone, or says why not. With `--level` the peer is named after it.
 #![expect(clippy::print_stdout, reason = "the line is the result")]
 
 use std::path::PathBuf;
@@ -23,7 +23,8 @@ struct Options {
     threads: usize,
     mesh: Option<PathBuf>,
     lanes: Option<usize>,
-    level: Level,
+    /// The instruction set and its name, where it was asked for.
+    level: Option<(Level, String)>,
 }
 
 fn main() -> ExitCode {
@@ -47,7 +48,7 @@ fn options(arguments: impl Iterator<Item = String>) -> Result<Options, Box<dyn s
         threads: 1,
         mesh: None,
         lanes: None,
-        level: Level::best(),
+        level: None,
     };
     let mut arguments = arguments;
     while let Some(name) = arguments.next() {
@@ -61,7 +62,7 @@ fn options(arguments: impl Iterator<Item = String>) -> Result<Options, Box<dyn s
             "--threads" => options.threads = value.parse()?,
             "--mesh" => options.mesh = Some(value.into()),
             "--lanes" => options.lanes = Some(value.parse()?),
-            "--level" => options.level = level(&value)?,
+            "--level" => options.level = Some((level(&value)?, value)),
             _ => return Err(format!("unknown option {name}").into()),
         }
     }
@@ -90,8 +91,12 @@ fn contend(options: &Options) -> Result<String, Box<dyn std::error::Error>> {
     let mut trace = experiment
         .trace(options.photons)
         .seed(options.seed)
-        .threads(options.threads)
-        .level(options.level);
+        .threads(options.threads);
+    let mut peer = "albedra".to_owned();
+    if let Some((level, name)) = &options.level {
+        trace = trace.level(*level);
+        peer = format!("albedra-{name}");
+    }
     if let Some(lanes) = options.lanes {
         trace = trace.lanes(lanes);
     }
@@ -102,7 +107,7 @@ fn contend(options: &Options) -> Result<String, Box<dyn std::error::Error>> {
     let seconds = run.wall.saturating_sub(compiled.wall).as_secs_f64();
     let cpu_seconds = run.cpu.saturating_sub(compiled.cpu).as_secs_f64();
     Ok(format!(
-        "{{\"peer\": \"albedra\", \"case\": \"{}\", \"photons\": {}, \"seed\": {}, \"threads\": {}, \
+        "{{\"peer\": \"{peer}\", \"case\": \"{}\", \"photons\": {}, \"seed\": {}, \"threads\": {}, \
          \"flights\": {flights}, \"seconds\": {seconds}, \"cpu_seconds\": {cpu_seconds}, \
          \"setup_seconds\": {}, \"ns_per_flight\": {}, \"mean_flight\": {}, \"untracked\": {}, \"bits\": \"{:016x}\"}}",
         options.case,
