@@ -145,8 +145,8 @@ impl Experiment {
     ///     Index of the first photon. A run may so be divided among machines, and merged.
     /// target : (str, float), optional
     ///     An output (see `Outcome.outputs`) and the relative standard uncertainty wanted of it: a pilot run on
-    ///     other photons, which is thrown away, decides how many photons to trace. The outcome equals that of
-    ///     tracing this number.
+    ///     other photons, which is thrown away, decides how many photons to trace. The numbers are those of
+    ///     tracing so many without a target; the outcome's `target` says whether it was met.
     /// resume : Outcome, optional
     ///     An outcome to continue, with the photons that follow its last one.
     /// progress : bool or callable, optional

@@ -121,7 +121,7 @@ impl<'a> Trace<'a> {
     }
 
     /// Wants a relative standard uncertainty of an output: a pilot run on other photons, which is thrown away, decides how
-    /// many photons to trace, at most the number given. The outcome equals that of tracing this number.
+    /// many photons to trace, at most the number given. The numbers are those of tracing so many.
     ///
     /// # Examples
     ///
