@@ -55,7 +55,7 @@ CASES = {
     ),
     "wall": (lambda: BOX.paint("p", wall="x", region=DISK, coating=WHITE), al.EnclosureError, '"x+"'),
     "no wall": (lambda: BOX.with_opening("o", region=DISK), ValueError, "wall must be given"),
-    "renamed": (lambda: BOX.with_opening("o", wall="x+"), ValueError, 'name must be "x+", got "o"'),
+    "taken": (lambda: BOX.with_opening("y+", wall="x+"), al.EnclosureError, 'name "y+" must be new'),
     "stop": (lambda: al.TimeGrid(stop=-1, bins=3), ValueError, "got -1"),
     "bins": (lambda: al.TimeGrid(stop=1, bins=-3), ValueError, "bins must lie in [0, 2^64 - 1], got -3"),
     "edges": (

@@ -274,9 +274,9 @@ impl Enclosure {
     /// Parameters
     /// ----------
     /// name : str
-    ///     Name of the opening; without a region, the name of the wall that becomes one.
+    ///     Name of the opening, by which it is reported.
     /// wall : str, optional
-    ///     The wall; needed with a region.
+    ///     The wall; by default, and without a region, the wall of the opening's name.
     /// region : Region, optional
     ///     The outline, in the wall's own coordinates; by default the whole wall.
     #[pyo3(signature = (name, *, wall = None, region = None))]
@@ -293,12 +293,8 @@ impl Enclosure {
                 let text = format!("wall must be given with the region of opening {name:?}");
                 return Err(PyValueError::new_err(text));
             }
-            (Some(wall), None) if wall != name => {
-                return Err(PyValueError::new_err(format!(
-                    "a wall that is opened as a whole keeps its name: name must be {wall:?}, got {name:?}"
-                )));
-            }
-            (_, None) => enclosure.opened(name),
+            (Some(wall), None) => enclosure.opened_as(name, wall),
+            (None, None) => enclosure.opened(name),
         };
         opened.map(Self).map_err(raise)
     }

@@ -337,3 +337,37 @@ fn losses_far_below_a_quantum_of_energy_still_close() {
     // About 4500 strikes of 1.1e-16 each.
     assert!((3e-13..8e-13).contains(&absorbed), "{absorbed:e}");
 }
+
+#[test]
+fn an_opening_takes_its_walls_place_under_its_own_name() {
+    let white = Coating::lambertian(0.5).unwrap();
+    let cube = Enclosure::cuboid([1.0; 3]).unwrap().coated(white);
+    let opened = cube.clone().opened_as("exit", "x+").unwrap();
+    let experiment = Experiment::new(&opened, Source::wall("exit")).map("x+", (2, 2));
+    let outcome = experiment.trace(6400).run().unwrap();
+    let flux = outcome.flux("exit").unwrap();
+    assert!(flux.escaped.value > 0.0 && flux.escaped == flux.incident);
+    assert!(outcome.flux("x+").is_err());
+    let on_map: f64 = outcome.map("x+").unwrap().irradiance.iter().sum::<f64>() * 0.25;
+    assert!((on_map / flux.incident.value - 1.0).abs() < 1e-12);
+    let text = experiment.to_text();
+    assert_eq!(Experiment::from_text(&text, None).unwrap(), experiment);
+    // A wall that is coated again has its own name again.
+    let closed = opened.with_coating("exit", white).unwrap();
+    assert_eq!(closed, cube);
+}
+
+#[test]
+fn light_that_hardly_ends_is_refused() {
+    let spot = albedra::Region::disk((0.0, 0.0), 1e-6);
+    let mirror = Enclosure::cuboid([1.0; 3])
+        .unwrap()
+        .coated(Coating::mirror(1.0).unwrap())
+        .with_opening("spot", "x+", spot)
+        .unwrap();
+    let experiment = Experiment::new(&mirror, Source::volume());
+    let error = experiment.check().unwrap_err();
+    assert!(matches!(error, albedra::ExperimentError::NearlyEndless { strikes } if strikes > 1e11));
+    assert!(error.to_string().contains("set a path limit"), "{error}");
+    assert!(experiment.path_limit(10.0).check().is_ok());
+}

@@ -59,6 +59,7 @@ fn rust_column_of_the_table_of_names_is_the_surface() {
         Enclosure::paint,
         Enclosure::with_opening,
         Enclosure::opened,
+        Enclosure::opened_as,
         Enclosure::with_medium,
         Enclosure::walls,
         Enclosure::medium,

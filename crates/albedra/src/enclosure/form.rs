@@ -23,6 +23,9 @@ struct WallForm {
     name: String,
     #[serde(default, skip_serializing_if = "Option::is_none")]
     finish: Option<Finish>,
+    /// The name of the opening that takes the wall's place, if it is not the wall's.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    opening: Option<String>,
 }
 
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
@@ -41,7 +44,8 @@ impl Enclosure {
     }
 
     pub(crate) fn to_form(&self) -> EnclosureForm {
-        let walls = self.solid.mesh.walls.iter().zip(&self.finishes);
+        let finishes = self.finishes.iter().zip(&self.openings);
+        let walls = self.solid.mesh.walls.iter().zip(finishes);
         let regions = self.patches.iter().map(|patch| RegionForm {
             name: patch.name.clone(),
             wall: self.solid.mesh.walls[patch.wall].clone(),
@@ -52,9 +56,10 @@ impl Enclosure {
             shape: self.solid.form.clone(),
             medium: self.medium,
             walls: walls
-                .map(|(name, &finish)| WallForm {
+                .map(|(name, (&finish, opening))| WallForm {
                     name: name.clone(),
                     finish,
+                    opening: opening.clone(),
                 })
                 .collect(),
             regions: regions.collect(),
@@ -71,6 +76,9 @@ impl Enclosure {
                 return Err(enclosure.unknown(&wall.name));
             };
             enclosure.finishes[index] = wall.finish;
+            if let Some(opening) = wall.opening {
+                enclosure = enclosure.opened_as(&opening, &wall.name)?;
+            }
         }
         for patch in form.regions {
             enclosure = enclosure.patched(&patch.name, &patch.wall, patch.region, patch.finish)?;

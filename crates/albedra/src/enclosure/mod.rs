@@ -45,6 +45,8 @@ pub struct Enclosure {
     pub(crate) solid: Arc<Solid>,
     /// What each wall does, if it was said.
     pub(crate) finishes: Vec<Option<Finish>>,
+    /// The name of the opening that takes a wall's place, if it has one of its own.
+    pub(crate) openings: Vec<Option<String>>,
     /// Regions in the order in which they were painted; later ones cover earlier ones.
     pub(crate) patches: Vec<Patch>,
     pub(crate) medium: Medium,
@@ -161,6 +163,7 @@ impl Enclosure {
         let finishes = vec![None; solid.walls.len()];
         Ok(Self {
             solid,
+            openings: vec![None; finishes.len()],
             finishes,
             patches: Vec::new(),
             medium: Medium::default(),
@@ -227,6 +230,32 @@ impl Enclosure {
         self.finished(wall, Finish::Opening)
     }
 
+    /// Makes a whole wall an opening that takes its place under a name of its own.
+    ///
+    /// # Examples
+    ///
+    /// ```
+    /// let box_ = albedra::Enclosure::cuboid([1.0, 1.0, 1.0])?.opened_as("exit", "z+")?;
+    /// assert_eq!(box_.rows()[5].0, "exit");
+    /// # Ok::<(), albedra::EnclosureError>(())
+    /// ```
+    ///
+    /// # Errors
+    ///
+    /// If there is no such wall or the name is taken.
+    pub fn opened_as(self, name: &str, wall: &str) -> Result<Self, EnclosureError> {
+        let Some(index) = self.solid.wall(wall) else {
+            return Err(self.unknown_wall(wall));
+        };
+        if name == wall {
+            return self.opened(wall);
+        }
+        self.new_name(name)?;
+        let mut opened = self.opened(wall)?;
+        opened.openings[index] = Some(name.to_owned());
+        Ok(opened)
+    }
+
     /// Fills the enclosure with a medium.
     ///
     /// # Examples
@@ -245,8 +274,14 @@ impl Enclosure {
     }
 
     fn finished(mut self, name: &str, finish: Finish) -> Result<Self, EnclosureError> {
-        if let Some(wall) = self.solid.wall(name) {
+        let opening = |own: &Option<String>| own.as_deref() == Some(name);
+        let wall = self
+            .solid
+            .wall(name)
+            .or_else(|| self.openings.iter().position(opening));
+        if let Some(wall) = wall {
             self.finishes[wall] = Some(finish);
+            self.openings[wall] = None;
         } else if let Some(patch) = self.patches.iter_mut().find(|patch| patch.name == name) {
             patch.finish = finish;
         } else {

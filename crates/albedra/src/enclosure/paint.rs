@@ -103,21 +103,9 @@ impl Enclosure {
         finish: Finish,
     ) -> Result<Self, EnclosureError> {
         let Some(index) = self.solid.wall(wall) else {
-            let walls = self.solid.mesh.walls.iter().map(String::as_str);
-            return Err(EnclosureError::UnknownWall {
-                name: wall.to_owned(),
-                near: Near::to(wall, walls),
-            });
+            return Err(self.unknown_wall(wall));
         };
-        // An output `ledger.absorbed` must mean the ledger's.
-        if ["", "ledger"].contains(&name)
-            || self.solid.wall(name).is_some()
-            || self.patches.iter().any(|patch| patch.name == name)
-        {
-            return Err(EnclosureError::Name {
-                name: name.to_owned(),
-            });
-        }
+        self.new_name(name)?;
         let plane = self.plane(index)?;
         let shape = region
             .fits(plane)
@@ -138,6 +126,29 @@ impl Enclosure {
         });
         self.see(index)?;
         Ok(self)
+    }
+
+    /// Refuses a name that is empty or taken. An output `ledger.absorbed` must mean the ledger's.
+    pub(super) fn new_name(&self, name: &str) -> Result<(), EnclosureError> {
+        let taken = ["", "ledger"].contains(&name)
+            || self.solid.wall(name).is_some()
+            || self.openings.iter().any(|own| own.as_deref() == Some(name))
+            || self.patches.iter().any(|patch| patch.name == name);
+        if taken {
+            return Err(EnclosureError::Name {
+                name: name.to_owned(),
+            });
+        }
+        Ok(())
+    }
+
+    /// The error for a wall that does not exist.
+    pub(super) fn unknown_wall(&self, wall: &str) -> EnclosureError {
+        let walls = self.solid.mesh.walls.iter().map(String::as_str);
+        EnclosureError::UnknownWall {
+            name: wall.to_owned(),
+            near: Near::to(wall, walls),
+        }
     }
 
     /// The plane of a wall that is to carry a region or a map.

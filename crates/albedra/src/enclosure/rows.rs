@@ -71,7 +71,7 @@ impl Enclosure {
             .zip(&self.finishes)
             .enumerate()
             .map(|(wall, (name, &finish))| Piece {
-                name,
+                name: self.openings[wall].as_ref().unwrap_or(name),
                 wall,
                 patch: None,
                 area: self.bare_area(wall),

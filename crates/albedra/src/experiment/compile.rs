@@ -2,7 +2,8 @@
 
 use std::sync::Arc;
 
-use super::facts::{facts, retirement};
+use super::error::MOST_STRIKES;
+use super::facts::{facts, kept_at_a_strike, retirement};
 use super::ground::{ground, surfaces};
 use super::layout::{Facts, Layout, Row};
 use super::observing::{maps, observables};
@@ -36,6 +37,10 @@ pub(crate) fn compile(experiment: &Experiment) -> Result<Compiled, ExperimentErr
     });
     if lossless && enclosure.medium.absorption() == 0.0 && settings.path_limit.is_none() {
         return Err(ExperimentError::Endless);
+    }
+    let strikes = 1.0 / (1.0 - kept_at_a_strike(experiment, &facts));
+    if strikes > MOST_STRIKES && settings.path_limit.is_none() {
+        return Err(ExperimentError::NearlyEndless { strikes });
     }
     let retirement = retirement(experiment, &facts);
     let layout = layout(experiment, rows, facts, &retirement)?;

@@ -75,6 +75,11 @@ pub enum ExperimentError {
     },
     /// Light could never be absorbed or leave: the run would not end.
     Endless,
+    /// Light loses so little at a strike that the run would hardly end.
+    NearlyEndless {
+        /// Strikes until the energy is down to 1/e.
+        strikes: f64,
+    },
     /// The outputs would take more memory than allowed.
     Memory {
         /// Bytes needed.
@@ -85,6 +90,9 @@ pub enum ExperimentError {
         largest_map: Option<String>,
     },
 }
+
+/// Mean strikes of a photon beyond which a path limit is asked for: seconds of work for each photon.
+pub(super) const MOST_STRIKES: f64 = 1e8;
 
 impl fmt::Display for ExperimentError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
@@ -131,6 +139,11 @@ impl fmt::Display for ExperimentError {
                     "path limit must be a positive number of metres, got {value}"
                 )
             }
+            Self::NearlyEndless { strikes } => write!(
+                f,
+                "light in this enclosure lives for about {strikes:.0e} strikes, at most {MOST_STRIKES:.0e} can be traced to \
+                 their end: set a path limit"
+            ),
             Self::Endless => write!(
                 f,
                 "light in this enclosure can never be absorbed or leave, so the run would not end: every reflectance is 1, \

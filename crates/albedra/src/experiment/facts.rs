@@ -3,7 +3,7 @@
 use super::layout::{Facts, Row};
 use super::{Experiment, sites};
 use crate::engine::Retirement;
-use crate::math::{ln, smaller};
+use crate::math::{ln, one_minus_exp_neg, smaller};
 
 /// Mean reflectances are kept this far from 0 and 1 where a decay time is expected from them.
 const LEAST_REFLECTANCE: f64 = 1e-6;
@@ -56,10 +56,15 @@ fn decay_per_metre(mean_reflectance: f64, mean_chord: f64, absorption: f64) -> f
     -ln(clamped) / mean_chord + absorption
 }
 
+/// Share of the energy that is left after a mean flight and a strike on the average wall.
+pub(super) fn kept_at_a_strike(experiment: &Experiment, facts: &Facts) -> f64 {
+    let depth = experiment.enclosure.medium.absorption() * facts.mean_chord;
+    facts.mean_reflectance * (1.0 - one_minus_exp_neg(depth))
+}
+
 pub(super) fn retirement(experiment: &Experiment, facts: &Facts) -> Retirement {
     let medium = experiment.enclosure.medium;
-    let kept = facts.mean_reflectance
-        * (1.0 - crate::math::one_minus_exp_neg(medium.absorption() * facts.mean_chord));
+    let kept = kept_at_a_strike(experiment, facts);
     // A hundred times the mean number of strikes, where that is more than a million.
     let strikes = 100.0 / (1.0 - smaller(kept, 1.0 - 1e-10));
     Retirement {

@@ -90,7 +90,7 @@ fn map_cells(layout: &Layout, ground: &Ground) -> MapCells {
         let wall = layout
             .rows
             .iter()
-            .position(|row| row.name == map.wall)
+            .position(|row| row.wall == map.wall)
             .unwrap_or(usize::MAX);
         let cells = [map.u_edges.len() - 1, map.v_edges.len() - 1];
         let lower = [map.u_edges[0], map.v_edges[0]];

@@ -32,7 +32,8 @@ pub(super) fn measure(mesh: &Mesh) -> (f64, f64) {
 }
 
 /// Looks for several bodies, and for a closed one that faces inward.
-pub(super) fn check(facets: usize, edges: &Edges, closed: bool, volume: f64, found: &mut Found) {
+pub(super) fn check(mesh: &Mesh, edges: &Edges, closed: bool, volume: f64, found: &mut Found) {
+    let facets = mesh.facets();
     if closed && volume < 0.0 {
         found.push(Problem::InsideOut { volume });
     }
@@ -50,7 +51,12 @@ pub(super) fn check(facets: usize, edges: &Edges, closed: bool, volume: f64, fou
         .filter(|&facet| on_edge[facet] && joined.first(facet) == facet)
         .collect();
     if bodies.len() > 1 {
-        found.push(Problem::SeveralBodies { facets: bodies });
+        let corner = |&facet: &usize| mesh.positions_of(facet).next();
+        let positions = bodies.iter().filter_map(corner).collect();
+        found.push(Problem::SeveralBodies {
+            facets: bodies,
+            positions,
+        });
     }
 }
 
@@ -134,15 +140,20 @@ mod tests {
         );
     }
 
+    /// Two bodies of six facets, each named by its first facet and a corner of that.
+    fn two_bodies(mesh: &Mesh) -> Problem {
+        let positions = [0, 6].map(|facet| mesh.positions_of(facet).next().expect("corners"));
+        Problem::SeveralBodies {
+            facets: vec![0, 6],
+            positions: positions.to_vec(),
+        }
+    }
+
     #[test]
     fn bodies_apart_or_touching_at_a_corner_are_two() {
         for shift in [3.0, 1.0] {
             let mesh = joined(&unit_cube(), &cuboid(DVec3::splat(shift), DVec3::ONE));
-            assert_eq!(
-                mesh.audit().problems,
-                [Problem::SeveralBodies { facets: vec![0, 6] }],
-                "{shift}"
-            );
+            assert_eq!(mesh.audit().problems, [two_bodies(&mesh)], "{shift}");
         }
     }
 
@@ -154,9 +165,6 @@ mod tests {
         );
         let audit = mesh.audit();
         assert_eq!(audit.volume, 0.875);
-        assert_eq!(
-            audit.problems,
-            [Problem::SeveralBodies { facets: vec![0, 6] }]
-        );
+        assert_eq!(audit.problems, [two_bodies(&mesh)]);
     }
 }

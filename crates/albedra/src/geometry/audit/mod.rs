@@ -92,13 +92,7 @@ impl Mesh {
             let welded = weld::weld(&self.vertices);
             let edges = edges::Edges::new(self, &welded);
             let faults = edges.problems(self);
-            bodies::check(
-                self.facets(),
-                &edges,
-                faults.is_empty(),
-                audit.volume,
-                &mut found,
-            );
+            bodies::check(self, &edges, faults.is_empty(), audit.volume, &mut found);
             let normals = facets::check(self, &welded, &mut found);
             found.extend(faults);
             crossings::check(self, &welded, &normals, &edges, &mut found);

@@ -58,6 +58,8 @@ pub enum Problem {
     SeveralBodies {
         /// The first facet of each body, in rising order.
         facets: Vec<usize>,
+        /// A corner of each of these facets, in metres.
+        positions: Vec<DVec3>,
     },
     /// A facet has fewer than three corners.
     TooFewCorners {
@@ -146,6 +148,9 @@ pub enum Problem {
     },
 }
 
+/// Bodies that a message names.
+const BODIES_SHOWN: usize = 8;
+
 impl fmt::Display for Problem {
     #[expect(
         clippy::too_many_lines,
@@ -193,12 +198,17 @@ impl fmt::Display for Problem {
                     Short(*volume)
                 )
             }
-            Self::SeveralBodies { facets } => write!(
-                f,
-                "there are {} bodies that share no edge, the first facet of each being {}; keep one, or join them",
-                facets.len(),
-                List(facets)
-            ),
+            Self::SeveralBodies { facets, positions } => {
+                write!(f, "there are {} bodies that share no edge;", facets.len())?;
+                for (facet, position) in facets.iter().zip(positions).take(BODIES_SHOWN) {
+                    write!(
+                        f,
+                        " one begins with facet {facet} at {};",
+                        Metres(*position)
+                    )?;
+                }
+                write!(f, " keep one, or join them")
+            }
             Self::TooManyOverlaps { pairs } => write!(
                 f,
                 "too many facets overlap to check all, {pairs} pairs were looked at; repair what is listed and look \

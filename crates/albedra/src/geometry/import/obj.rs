@@ -2,8 +2,8 @@
 //!
 //! Read: `v` (three coordinates; a fourth and colours are not looked at), `f` (corners `v`, `v/vt`, `v//vn` or
 //! `v/vt/vn`, counted from 1 or backwards from −1; the vertex may follow later; polygons stay whole), and the names that
-//! `g`, `o` and `usemtl` set for the facets after them. `g` may give several names: the first counts; without a name it
-//! ends the group. An object or material name is all of its line. A `#` begins a comment at the beginning of a line,
+//! `g`, `o` and `usemtl` set for the facets after them. A name is all of its line, as in
+//! `g side 1`; a `g` without one ends the group. A `#` begins a comment at the beginning of a line,
 //! and before any word but a name; a backslash at the end of a line that is no comment joins it with the next.
 //!
 //! Statements that add no facets are skipped; curves, surfaces and anything unknown are errors, since a part of the shape
@@ -49,7 +49,7 @@ pub(super) fn read(bytes: &[u8], unit: Unit) -> Result<Mesh, ImportError> {
                 let wall = group.or(object).or(material).unwrap_or(nameless);
                 read_facet(&mut words, &mut builder, wall)?;
             }
-            b"g" => group = words.word_in_line().map(|name| builder.wall(name)),
+            b"g" => group = named(words.rest_of_line()).map(|name| builder.wall(name)),
             b"o" => object = named(words.rest_of_line()).map(|name| builder.wall(name)),
             b"usemtl" => material = named(words.rest_of_line()).map(|name| builder.wall(name)),
             [b'#', ..] => {
@@ -213,8 +213,8 @@ mod tests {
                 "white paint",
                 left,
                 left,
-                "top",
-                "top",
+                "top upper",
+                "top upper",
                 "#1",
                 "right",
                 "black",
@@ -223,7 +223,16 @@ mod tests {
         );
         assert_eq!(
             mesh.walls,
-            ["mesh", "white paint", left, "black", "top", "right", "#1"]
+            [
+                "mesh",
+                "white paint",
+                left,
+                "black",
+                "top upper",
+                "right",
+                "#1",
+                "top"
+            ]
         );
     }
 

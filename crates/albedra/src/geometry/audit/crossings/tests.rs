@@ -63,7 +63,8 @@ fn crossing_boxes_name_pairs_and_positions() {
     assert!(
         audit
             .problems
-            .contains(&Problem::SeveralBodies { facets: vec![0, 6] })
+            .iter()
+            .any(|problem| bodies_from(problem, &[0, 6]))
     );
     for problem in &audit.problems {
         if let Problem::Intersection { position, .. } = problem {
@@ -191,10 +192,8 @@ fn concave_prism_is_sound_and_a_bar_through_its_notch_is_free() {
         &l_prism(1.0),
         &cuboid(DVec3::new(1.5, 1.5, 0.5), DVec3::new(0.5, 0.5, 4.0)),
     );
-    assert_eq!(
-        free.audit().problems,
-        [Problem::SeveralBodies { facets: vec![0, 8] }]
-    );
+    let problems = free.audit().problems;
+    assert!(problems.len() == 1 && bodies_from(&problems[0], &[0, 8]));
     let through = joined(
         &l_prism(1.0),
         &cuboid(DVec3::new(0.5, 1.5, 0.5), DVec3::new(0.5, 0.5, 4.0)),
@@ -354,4 +353,8 @@ proptest! {
         prop_assert!(!audit.to_string().is_empty());
         prop_assert_eq!(mesh.audit(), audit);
     }
+}
+
+fn bodies_from(problem: &Problem, expected: &[usize]) -> bool {
+    matches!(problem, Problem::SeveralBodies { facets, .. } if facets == expected)
 }
