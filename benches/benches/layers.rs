@@ -2,6 +2,10 @@
 //!
 //! Kernels are private, so a layer shows as the difference of two cases: `planes/26` has 20 planes more than `box`,
 //! `facets/26` is a body that is not convex and so goes through the hierarchy.
+#![expect(
+    clippy::disallowed_methods,
+    reason = "corners of a bench's body, which decide no result"
+)]
 
 use std::hint::black_box;
 
