@@ -46,7 +46,9 @@ __version__: str
 
 _T_co = TypeVar("_T_co", covariant=True)
 
-class EnclosureError(ValueError): ...
+class EnclosureError(ValueError):
+    audit: Audit | None
+
 class ExperimentError(ValueError): ...
 class MergeError(ValueError): ...
 

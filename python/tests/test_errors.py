@@ -182,3 +182,15 @@ def test_errors_have_their_families():
         assert error.__module__ == "albedra"
     assert issubclass(al.Interrupted, KeyboardInterrupt)
     assert al.Interrupted.result is None
+
+
+def test_an_unsound_mesh_comes_with_its_audit():
+    vertices = [(0, 0, 0), (1, 0, 0), (0, 1, 0), (0, 0, 1)]
+    with pytest.raises(al.EnclosureError) as raised:
+        al.Enclosure.from_mesh(vertices, [(0, 2, 1), (0, 1, 3), (0, 3, 2)])
+    audit = raised.value.audit
+    assert not audit.is_sound
+    assert len(audit.problems) == 3
+    with pytest.raises(al.EnclosureError) as raised:
+        BOX.with_coating("nowhere", WHITE)
+    assert raised.value.audit is None

@@ -8,11 +8,13 @@ use pyo3::create_exception;
 use pyo3::exceptions::{PyKeyboardInterrupt, PyRuntimeError, PyValueError};
 use pyo3::prelude::*;
 
+use crate::wall::Audit;
+
 create_exception!(
     albedra,
     EnclosureError,
     PyValueError,
-    "An enclosure that cannot be: its shape, a name or a region is wrong.\n\nThe text lists all problems of a mesh."
+    "An enclosure that cannot be: its shape, a name or a region is wrong.\n\n`audit` is the Audit of a mesh that encloses no body, with all its problems; None otherwise."
 );
 create_exception!(
     albedra,
@@ -71,7 +73,7 @@ pub(crate) fn raise(fault: impl Into<Fault>) -> PyErr {
             };
             std::io::Error::new(*kind, error.to_string()).into()
         }
-        Fault::Enclosure(error) => EnclosureError::new_err(error.to_string()),
+        Fault::Enclosure(error) => enclosure_error(&error),
         Fault::Experiment(error) => ExperimentError::new_err(error.to_string()),
         Fault::Merge(error) => MergeError::new_err(error.to_string()),
         Fault::Run(error) => match *error {
@@ -82,6 +84,16 @@ pub(crate) fn raise(fault: impl Into<Fault>) -> PyErr {
             error => PyValueError::new_err(error.to_string()),
         },
     }
+}
+
+/// The exception for an enclosure, with the audit of a mesh that is unsound.
+fn enclosure_error(error: &albedra::EnclosureError) -> PyErr {
+    let raised = EnclosureError::new_err(error.to_string());
+    let albedra::EnclosureError::Unsound(audit) = error else {
+        return raised;
+    };
+    let attached = Python::attach(|py| raised.value(py).setattr("audit", Audit::of(audit)));
+    attached.err().unwrap_or(raised)
 }
 
 /// The same exception with a note on the file that it is about.

@@ -74,11 +74,11 @@ mod _albedra {
 
     #[pymodule_init]
     fn init(module: &Bound<'_, PyModule>) -> PyResult<()> {
-        // What an exception says that was not raised by a run.
-        module
-            .py()
-            .get_type::<Interrupted>()
-            .setattr("result", module.py().None())?;
+        // What an exception says that was not raised by a run, or not for a mesh.
+        let py = module.py();
+        py.get_type::<Interrupted>().setattr("result", py.None())?;
+        py.get_type::<EnclosureError>()
+            .setattr("audit", py.None())?;
         module.add("__version__", env!("CARGO_PKG_VERSION"))
     }
 }
