@@ -123,14 +123,21 @@ def _flux(outcome: Outcome, ax: Axes) -> Axes:
         intervals = [estimate.coverage_interval(COVERAGE) for estimate in estimates]
         half = np.array([interval.high for interval in intervals]) - values
         known = np.isfinite(half)
-        style = {"ecolor": "black", "elinewidth": 1.0, "capsize": 2.5}
         if kind == "incident":
             ends = values + np.where(known, half, 0.0)
             for place, estimate, end in zip(places, estimates, ends, strict=True):
                 ax.annotate(f" {estimate}", (end, place + shift), va="center", fontsize=7)
         ax.barh(places + shift, values, 0.25, color=colour, label=label)
         # Where there are too few photons for an uncertainty, none is drawn.
-        ax.errorbar(values[known], (places + shift)[known], xerr=half[known], fmt="none", **style)
+        ax.errorbar(
+            values[known],
+            (places + shift)[known],
+            xerr=half[known],
+            fmt="none",
+            ecolor="black",
+            elinewidth=1.0,
+            capsize=2.5,
+        )
     ax.set_yticks(places, names)
     ax.invert_yaxis()
     ax.set_xlim(0, 1.35 * ax.get_xlim()[1])

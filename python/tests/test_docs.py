@@ -39,5 +39,6 @@ def test_the_main_names_have_examples():
 def test_methods_are_documented():
     for name in DOCUMENTED:
         for method, value in vars(getattr(al, name)).items() if inspect.isclass(getattr(al, name)) else ():
-            if not method.startswith("_") and method not in ("result", "count", "index"):
+            # An exception's attribute is None in the class; what a tuple has comes without a text of ours.
+            if not method.startswith("_") and value is not None and method not in ("count", "index"):
                 assert inspect.getdoc(value), f"{name}.{method}"
