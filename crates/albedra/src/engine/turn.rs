@@ -52,13 +52,19 @@ fn cosine_law(normal: [f64; 3], u: f64, v: f64) -> [f64; 3] {
     [x - along * nx, y - along * ny, z - along * mz]
 }
 
+/// Number of live lanes; the comparison lets the loops over them go without bounds checks.
 #[inline(always)]
-fn lambertian(block: &mut Block) {
-    let live = if block.live < LANES {
+fn live_of(block: &Block) -> usize {
+    if block.live < LANES {
         block.live
     } else {
         LANES
-    };
+    }
+}
+
+#[inline(always)]
+fn lambertian(block: &mut Block) {
+    let live = live_of(block);
     let Block {
         scratch: [first, second],
         normal: [nx, ny, nz],
@@ -75,11 +81,7 @@ fn lambertian(block: &mut Block) {
 
 #[inline(always)]
 fn mixed(shares: &[f64], block: &mut Block) {
-    let live = if block.live < LANES {
-        block.live
-    } else {
-        LANES
-    };
+    let live = live_of(block);
     let Block {
         scratch: [first, second],
         normal: [nx, ny, nz],

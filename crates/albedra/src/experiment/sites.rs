@@ -2,7 +2,7 @@
 
 use super::ground::Ground;
 use super::{Experiment, ExperimentError};
-use crate::enclosure::Solid;
+use crate::enclosure::{Piece, Solid};
 use crate::engine::{Lane, Surfaces};
 use crate::flight::Hierarchy;
 use crate::geometry::RegionShape;
@@ -161,13 +161,13 @@ impl Stage<'_> {
                         near,
                     });
                 };
-                self.in_sight(index, row)?;
-                self.row_site(index, row, aim)
+                self.in_sight(index, &pieces[row])?;
+                self.row_site(index, &pieces[row], row, aim)
             }
             Place::Walls => {
                 let pieces = self.experiment.enclosure.pieces();
-                let sites = (0..pieces.len())
-                    .map(|row| self.row_site(index, row, aim))
+                let sites = (pieces.iter().enumerate())
+                    .map(|(row, piece)| self.row_site(index, piece, row, aim))
                     .collect::<Result<_, _>>()?;
                 let areas: Vec<f64> = pieces.iter().map(|piece| piece.area).collect();
                 Ok(Box::new(AnyWall::new(&areas, sites)))
@@ -188,9 +188,8 @@ impl Stage<'_> {
     }
 
     /// Refuses a wall or region of which so little can be seen that trial finds no point of it.
-    fn in_sight(&self, index: usize, row: usize) -> Result<(), ExperimentError> {
+    fn in_sight(&self, index: usize, piece: &Piece<'_>) -> Result<(), ExperimentError> {
         let enclosure = &self.experiment.enclosure;
-        let piece = &enclosure.pieces()[row];
         let whole = piece
             .patch
             .map_or(enclosure.solid.walls[piece.wall].area, |patch| {
@@ -203,11 +202,11 @@ impl Stage<'_> {
     fn row_site(
         &self,
         index: usize,
+        piece: &Piece<'_>,
         row: usize,
         aim: Aim,
     ) -> Result<Box<dyn Site>, ExperimentError> {
         let enclosure = &self.experiment.enclosure;
-        let piece = &enclosure.pieces()[row];
         let site = WallSite::new(&enclosure.solid, self.ground, self.surfaces, piece.wall);
         if let Aim::Parallel(axis) = aim {
             let outward = site.surfaces().any(|surface| {
